@@ -1,0 +1,117 @@
+import { unavailable } from './available';
+import type { Fitted } from './estimate/fitted';
+import { beamOf } from './evidence/beam';
+import { breakEvenOf } from './evidence/break-even';
+import { carriedByOf } from './evidence/carried-by';
+import { cautionsOf } from './evidence/cautions';
+import { cellResultsOf } from './evidence/cell-results';
+import { exponentScanOf } from './evidence/exponent-scan';
+import { judgeOf } from './evidence/judge';
+import { overturnOf } from './evidence/overturn';
+import { pricesOf, squareOf } from './evidence/price';
+import { selfChecksOf } from './evidence/self-checks';
+import { structureEvidence } from './evidence/structure-evidence';
+import { betweenRulesOf } from './inference/between-rules';
+import { checkModel, type Model } from './inference/check-model';
+import { fitResultOf } from './inference/fit-result';
+import { fitChosen, fitRivals, type RivalFit } from './inference/fits';
+import { inferenceOf } from './inference/inferred';
+import { intraclassOf } from './inference/intraclass';
+import { likelihoodsOf } from './inference/likelihoods';
+import { questionsOf } from './inference/questions';
+import { robustBeside } from './inference/robust';
+import { done, type Outcome, refuseAll } from './protocol/outcome';
+import type { Plan } from './protocol/plan';
+import type { Result } from './protocol/result';
+import type { Hooks } from './protocol/source';
+import type { Cells } from './table/cells';
+import { VERSION } from './version';
+
+/**
+ * The whole path from a plan and its used cells to the result.
+ *
+ * cells: from `prepareCells`. Refuses what this version does not fit (`not-available`, every such key and kind), what the model stage refuses,
+ * and a likelihood whose maximum was not found. The same plan and cells give the same result to the last bit, on any machine.
+ */
+export function analyse(asked: { readonly plan: Plan; readonly cells: Cells; readonly hooks: Hooks }): Outcome<Result> {
+  const { plan, hooks } = asked;
+  const absent = unavailable(plan);
+  const model = checkModel(asked);
+  if (absent.length > 0) return refuseAll(model.ok ? absent : [...absent, ...model.problems]);
+  if (!model.ok) return model;
+
+  hooks.progress('fit', 0.1);
+  const fitted = fitChosen({ plan, hooks, model: model.value });
+  if (!fitted.ok) return fitted;
+  const rivals = fitRivals({ plan, hooks, model: model.value });
+  if (!rivals.ok) return rivals;
+  return resultOf({ plan, hooks, model: model.value, fitted: fitted.value, rivals: rivals.value });
+}
+
+function resultOf(fits: {
+  readonly plan: Plan;
+  readonly model: Model;
+  readonly fitted: Fitted;
+  readonly rivals: readonly RivalFit[];
+  readonly hooks: Hooks;
+}): Outcome<Result> {
+  const { plan, model, fitted, rivals, hooks } = fits;
+  const { cells, known, design } = model;
+  const { level } = plan.inference;
+  const inferred = inferenceOf({ fitted, cells, plan });
+  if (!inferred.ok) return inferred;
+  const likelihoods = likelihoodsOf(fitted);
+  const { coefficients } = inferred.value;
+  hooks.progress('evidence', 0.3);
+  const evidence = structureEvidence({ fitted, cells, plan, design, hooks });
+  hooks.progress('sensitivity', 0.6);
+  const scan = exponentScanOf({ fitted, cells, plan });
+  const pieces = {
+    data: cells.data,
+    fit: fitResultOf({
+      fitted,
+      inferred: inferred.value,
+      cells,
+      plan,
+      carriedBy: carriedByOf({ fitted, cells }),
+      likelihoods,
+    }),
+    robustBeside: robustBeside(fitted),
+    ...cellResultsOf({ fitted, cells }),
+    beside: pricesOf({ fitted, rivals }),
+    evidence,
+    betweenRules: betweenRulesOf(fitted, level, hooks),
+    beam: beamOf({ fitted, labels: cells.labels, judge: judgeOf(cells, plan) }),
+    overturn: overturnOf({ fitted, cells, plan, coefficients, rivals, ends: scan.ends }),
+    selfChecks: selfChecksOf({ fitted, cells, plan, rivals }),
+  };
+  hooks.progress('report', 0.9);
+  return done({
+    format: 'steelyard-result/1',
+    plan,
+    data: pieces.data,
+    fit: pieces.fit,
+    robustBeside: pieces.robustBeside,
+    individualLevel: null,
+    cells: pieces.cells,
+    effectiveCells: pieces.effectiveCells,
+    beside: pieces.beside,
+    square: squareOf([fitted, ...rivals.map((rival) => rival.fitted)]),
+    breakEven: breakEvenOf({ fitted, cells }),
+    intraclass: intraclassOf(likelihoods, level),
+    evidence,
+    betweenRules: pieces.betweenRules,
+    questions: questionsOf({ plan, fitted, inferred: inferred.value, known }),
+    beam: pieces.beam,
+    exponentScan: scan.scan,
+    exponentSupport: scan.support,
+    bounds: [],
+    commonCorrelation: [],
+    whatItTakes: null,
+    bootstrapTau2: null,
+    overturn: pieces.overturn,
+    selfChecks: pieces.selfChecks,
+    cautions: cautionsOf({ plan, cells, fitted, pieces, hardlySeparate: model.hardlySeparate }),
+    made: { version: VERSION },
+  });
+}

@@ -1,0 +1,15 @@
+import { errorOf } from '../estimate/fit-at';
+import type { Fitted } from '../estimate/fitted';
+import type { SmallestDeparture } from '../protocol/result';
+
+type Errors = SmallestDeparture['errors'];
+
+/** Root of diag C Omega' C' for independent errors of the variances given, C held. */
+export function errorsUnder(fitted: Fitted, variances: Float64Array): Errors {
+  return errorsFrom(fitted, (pull) => errorOf(pull, variances));
+}
+
+/** The error that every row of C has, by a rule of its own. */
+export function errorsFrom(fitted: Fitted, errorBy: (pull: Float64Array) => number): Errors {
+  return fitted.pulls.map((pull, j) => ({ term: fitted.design.names[j] as string, se: errorBy(pull) }));
+}

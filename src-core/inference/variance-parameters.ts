@@ -1,0 +1,54 @@
+import { symmetricInverse } from '../algebra/dense';
+import { likelihoodAt } from '../estimate/likelihood';
+import { freeParameters } from '../model/structure';
+import type { VarianceParameter } from '../protocol/result';
+import type { Likelihoods } from './likelihoods';
+import { parameterInterval } from './parameter-profile';
+import type { Ends } from './profile';
+import { qProfileOf } from './q-profile-of';
+import { numberOrNull } from './reference';
+
+/**
+ * Every variance parameter with its standard error and interval.
+ *
+ * Error: root of the inverse expected information, of the full likelihood under full and two-step, else of the restricted; null under moments.
+ * Interval: profile likelihood under full and restricted, Q-profile of tau^2 under moments, else null. Estimates are null where nothing is
+ * left to estimate them from. A parameter that the user set has neither.
+ *
+ * Example: thirteen vaccine trials on latitude, restricted: tau2 0.076348, error 0.059047, 0.005807 to 0.443216.
+ */
+export function varianceParametersOf(likelihoods: Likelihoods, level: number): VarianceParameter[] {
+  const { structure, theta } = likelihoods.fitted;
+  const errors = informationErrors(likelihoods);
+  return structure.parameters.map(({ name, role, fixed }, index) => {
+    const estimate = numberOrNull(theta[index] as number);
+    if (fixed !== null || estimate === null)
+      return { name, estimate, se: null, low: null, high: null, atBoundary: false, fixed: fixed !== null };
+    const se = errors?.[index] ?? null;
+    const { low, high } = intervalOf(likelihoods, { index, level, step: se });
+    const atBoundary = role !== 'exponent' && estimate === 0;
+    return { name, estimate, se, low, high, atBoundary, fixed: false };
+  });
+}
+
+function intervalOf(likelihoods: Likelihoods, asked: { index: number; level: number; step: number | null }): Ends {
+  const { method } = likelihoods.fitted.estimate;
+  if (method === 'full' || method === 'restricted') return parameterInterval(likelihoods, asked);
+  if (method === 'moments') return qProfileOf(likelihoods, asked.level);
+  return { low: null, high: null };
+}
+
+/** By index of the parameter; undefined entries for fixed ones. Null under moments, or where the information is singular. */
+function informationErrors({ fitted, rows }: Likelihoods): (number | undefined)[] | null {
+  const { structure, theta, estimate } = fitted;
+  if (estimate.method === 'moments' || fitted.residualFreedom <= 0) return null;
+  const restricted = estimate.method === 'restricted' || estimate.method === 'least-squares';
+  const at = likelihoodAt({ rows, structure, restricted, theta });
+  const finite = at?.information.every((row) => row.every((value) => numberOrNull(value) !== null));
+  const inverse = at && finite ? symmetricInverse(at.information) : null;
+  if (!inverse) return null;
+  const errors = new Array<number | undefined>(theta.length).fill(undefined);
+  for (const [place, index] of freeParameters(structure).entries())
+    errors[index] = Math.sqrt(inverse[place]?.[place] as number) * (at?.units[place] as number);
+  return errors;
+}

@@ -1,0 +1,12 @@
+export { chiSquareLower, chiSquareQuantile, chiSquareUpper, chiSquareUpperQuantile } from './chi-square';
+export { fLower, fQuantile, fUpper, fUpperQuantile } from './fisher';
+export { noncentralChiSquareUpper, noncentralFUpper, noncentralTUpper } from './noncentral';
+export {
+  normalDensity,
+  normalLower,
+  normalQuantile,
+  normalTwoSided,
+  normalUpper,
+  normalUpperQuantile,
+} from './normal';
+export { tLower, tQuantile, tTwoSided, tUpper, tUpperQuantile } from './student';

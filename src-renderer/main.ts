@@ -1,0 +1,7 @@
+import { mount } from 'svelte';
+import Page from './Page.svelte';
+import './theme/page.css';
+
+const target = document.getElementById('page');
+if (!target) throw new Error('index.html holds no place for the page');
+mount(Page, { target });

@@ -1,0 +1,2 @@
+// src-main/command/wrong-analyse.ts | layers | only-the-engine-analyses
+export { analyse } from '@core/analyse';

@@ -1,0 +1,2 @@
+// src-core/report/wrong-clock.ts | lint | core-takes-its-functions-from-numbers
+export const wrong = Date.now();

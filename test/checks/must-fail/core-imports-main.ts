@@ -1,0 +1,2 @@
+// src-core/estimate/wrong-main.ts | layers | core-knows-no-machine
+export { openWindow } from '../../src-main/window';

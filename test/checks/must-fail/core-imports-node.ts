@@ -1,0 +1,2 @@
+// src-core/model/wrong-node.ts | layers | core-knows-no-node
+export { readFileSync } from 'node:fs';

@@ -1,0 +1,2 @@
+// src-core/words/wrong-circle.ts | layers | no-circle
+export * from './wrong-circle';

@@ -1,0 +1,2 @@
+// src-core/report/wrong-date.ts | lint | core-takes-its-functions-from-numbers
+export const wrong = new Date();

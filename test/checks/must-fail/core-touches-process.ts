@@ -1,0 +1,2 @@
+// src-core/numbers/wrong-process.ts | types | TS2591
+export const wrong = process.pid;

@@ -1,0 +1,2 @@
+// src-main/bridge/wrong-door.ts | layers | doors-never-import-each-other
+export * from '../command/command';

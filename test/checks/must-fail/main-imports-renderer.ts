@@ -1,0 +1,2 @@
+// src-main/command/wrong-screen.ts | layers | main-never-renderer
+export * from '../../src-renderer/main';

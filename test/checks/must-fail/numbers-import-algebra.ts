@@ -1,0 +1,2 @@
+// src-core/numbers/wrong-algebra.ts | layers | core-numbers-looks-down-the-ladder
+export { leastSquares } from '../algebra/least-squares';

@@ -1,0 +1,2 @@
+// src-main/preload.ts | layers | preload-is-tiny
+export { exitStatusOf } from '@core/protocol/problems';

@@ -1,0 +1,2 @@
+// src-core/protocol/wrong-words.ts | layers | core-protocol-looks-down-the-ladder
+export { sentence } from '../words/problems';

@@ -1,0 +1,2 @@
+// src-renderer/wrong-node.ts | layers | renderer-knows-no-node
+export { join } from 'node:path';

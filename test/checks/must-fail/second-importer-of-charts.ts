@@ -1,0 +1,2 @@
+// src-main/command/wrong-charts.ts | layers | one-importer-of-echarts
+export { init } from 'echarts';

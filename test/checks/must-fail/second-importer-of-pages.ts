@@ -1,0 +1,3 @@
+// src-main/command/wrong-pages.ts | layers | one-importer-of-pdfkit-svg-to-pdfkit
+import PDFDocument from 'pdfkit';
+export const wrong = PDFDocument;
