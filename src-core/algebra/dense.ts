@@ -13,6 +13,9 @@ import { powerOfTwoBelow } from './powers-of-two';
  */
 export type Rows = readonly ArrayLike<number>[];
 
+/** Singular values without their vectors: a fraction of the work. */
+const VALUES_ALONE = { computeLeftSingularVectors: false, computeRightSingularVectors: false };
+
 /** Below this share of the largest, an eigenvalue of a scaled matrix counts as nothing. */
 const SINGULAR = 1e-14;
 
@@ -73,7 +76,7 @@ export function solve(rows: Rows, b: ArrayLike<number>): Float64Array | null {
   const matrix = checked(rows);
   if (rows.length === 0) return new Float64Array(0);
   const unit = toUnitSize(matrix);
-  const singular = new SingularValueDecomposition(matrix).diagonal;
+  const singular = new SingularValueDecomposition(matrix, VALUES_ALONE).diagonal;
   if ((singular.at(-1) as number) <= SINGULAR * (singular[0] as number)) return null;
   const right = Matrix.columnVector(Array.from(b, (value) => value / unit));
   return Float64Array.from(new LuDecomposition(matrix).solve(right).to1DArray());
@@ -84,7 +87,7 @@ export function singularValues(rows: Rows): Float64Array {
   const matrix = checked(rows);
   if (rows.length === 0) return new Float64Array(0);
   const unit = toUnitSize(matrix);
-  return Float64Array.from(new SingularValueDecomposition(matrix).diagonal, (value) => value * unit);
+  return Float64Array.from(new SingularValueDecomposition(matrix, VALUES_ALONE).diagonal, (value) => value * unit);
 }
 
 function checked(rows: Rows): Matrix {

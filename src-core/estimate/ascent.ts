@@ -1,7 +1,7 @@
 import { solve } from '../algebra/dense';
 import { freeParameters, type Structure } from '../model/structure';
 import { exp } from '../numbers/elementary';
-import { type Height, heightAt, type Likelihood, likelihoodAt } from './likelihood';
+import { type Height, heightAt, type Likelihood, likelihoodAt, scoreAt } from './likelihood';
 import type { LikelihoodRows } from './likelihood-rows';
 
 /** Rounds at most, and how many of them keep to the expected information before the observed one is tried. */
@@ -14,6 +14,8 @@ const LONGEST_EXPONENT = 0.5;
 /** The rule of arrival: relative change of every parameter, and the score in units of its own standard deviation. */
 const CHANGE = 1e-10;
 const SCORE = 1e-8;
+/** Where the height alone is asked for, such a score is near enough: the height is then right to half its square. */
+const SCORE_FOR_HEIGHT = 1e-6;
 /** A part whose share of the variance falls below this is on its way to 0. */
 const VANISHED = 1e-13;
 /** The exponent is sought between minus and plus this: beyond, likelihoods of few cells grow without bound by fitting k cells exactly. */
@@ -27,6 +29,8 @@ export interface Climb {
   readonly rows: LikelihoodRows;
   readonly structure: Structure;
   readonly restricted: boolean;
+  /** True where the maximum's height is asked for and not its place: the last digits of the place are left out. */
+  readonly heightOnly?: boolean;
 }
 
 /** A point and the likelihood there. */
@@ -38,7 +42,7 @@ export interface Place {
 export type Arrival =
   | { readonly ended: 'maximum'; readonly theta: Float64Array; readonly logLikelihood: number; readonly rounds: number }
   | { readonly ended: 'boundary'; readonly parameter: number; readonly rounds: number }
-  | { readonly ended: 'lost'; readonly theta: Float64Array; readonly rounds: number };
+  | { readonly ended: 'lost'; readonly theta: Float64Array; readonly logLikelihood: number; readonly rounds: number };
 
 /**
  * Climbs a likelihood from one start by Fisher scoring on ln phi, ln tau^2 and delta, halving steps that fall; where scoring is slow, by Newton's
@@ -50,7 +54,7 @@ export type Arrival =
  */
 export function climb(model: Climb, start: Float64Array): Arrival {
   const first = bestScale(model, start);
-  if (!first) return { ended: 'lost', theta: start, rounds: 0 };
+  if (!first) return { ended: 'lost', theta: start, logLikelihood: -Infinity, rounds: 0 };
   let { theta, logLikelihood } = first;
   let at = likelihoodAt({ ...model, theta });
   const free = freeParameters(model.structure);
@@ -58,21 +62,25 @@ export function climb(model: Climb, start: Float64Array): Arrival {
     const gone = vanishing(model.structure, theta);
     if (gone >= 0) return { ended: 'boundary', parameter: gone, rounds };
     if (!at || Math.abs(theta[model.structure.exponentAt] ?? 0) > WIDEST_EXPONENT)
-      return { ended: 'lost', theta, rounds };
+      return { ended: 'lost', theta, logLikelihood, rounds };
     const here = at;
     const score = inSteps(model.structure, theta, here);
+    const within = (share: number) =>
+      free.every((_, a) => Math.abs(score[a] as number) <= share * spreadOf(model.structure, theta, here, a));
+    if (model.heightOnly && within(SCORE_FOR_HEIGHT)) return { ended: 'maximum', theta, logLikelihood, rounds };
     const step = direction({ model, theta, at: here, newton: rounds > SCORING_ROUNDS });
     const next: Place | null = step && halved({ model, theta, logLikelihood, step });
-    const settled = free.every(
-      (_, a) => Math.abs(score[a] as number) <= SCORE * spreadOf(model.structure, theta, here, a),
-    );
-    if (!next) return settled ? { ended: 'maximum', theta, logLikelihood, rounds } : { ended: 'lost', theta, rounds };
+    const settled = within(SCORE);
+    if (!next)
+      return settled
+        ? { ended: 'maximum', theta, logLikelihood, rounds }
+        : { ended: 'lost', theta, logLikelihood, rounds };
     const still = free.every((i) => changed(theta[i] as number, next.theta[i] as number) < CHANGE);
     ({ theta, logLikelihood } = next);
     if (still && settled) return { ended: 'maximum', theta, logLikelihood, rounds };
     at = likelihoodAt({ ...model, theta });
   }
-  return { ended: 'lost', theta, rounds: ROUNDS };
+  return { ended: 'lost', theta, logLikelihood, rounds: ROUNDS };
 }
 
 /** True where every part's variance is free to grow, so that one factor over all of Omega is free as well. */
@@ -101,14 +109,14 @@ function isLogged(structure: Structure, i: number): boolean {
 }
 
 /** d(theta / unit)/du of each free parameter, u being ln theta or theta. */
-function stretch(structure: Structure, theta: Float64Array, { units }: Likelihood): Float64Array {
+function stretch(structure: Structure, theta: Float64Array, { units }: Pick<Likelihood, 'units'>): Float64Array {
   return Float64Array.from(freeParameters(structure), (i, a) =>
     isLogged(structure, i) ? (theta[i] as number) / (units[a] as number) : 1,
   );
 }
 
 /** The score by the parameters of the steps. */
-function inSteps(structure: Structure, theta: Float64Array, at: Likelihood): Float64Array {
+function inSteps(structure: Structure, theta: Float64Array, at: Pick<Likelihood, 'units' | 'score'>): Float64Array {
   const by = stretch(structure, theta, at);
   return at.score.map((value, a) => value * (by[a] as number));
 }
@@ -132,9 +140,15 @@ function direction(model: { model: Climb; theta: Float64Array; at: Likelihood; n
       ? newton
       : (solve(expected, score) ?? score.map((s, a) => s / ((expected[a] as Float64Array)[a] as number)));
   if (!step.every(Number.isFinite)) return null;
-  const limits = freeParameters(structure).map((i) => (isLogged(structure, i) ? LONGEST : LONGEST_EXPONENT));
+  const limits = freeParameters(structure).map((i) => longest(structure, i));
   const over = step.reduce((most, d, a) => Math.max(most, Math.abs(d) / (limits[a] as number)), 1);
   return step.map((d) => d / over);
+}
+
+/** Beside an exponent phi follows it, by as much as the unit of size asks for: the exponent alone is held back. */
+function longest({ parameters, scaleAt, exponentAt }: Structure, i: number): number {
+  if (i === exponentAt) return LONGEST_EXPONENT;
+  return i === scaleAt && parameters[exponentAt]?.fixed === null ? Infinity : LONGEST;
 }
 
 /** Minus the differences of the score on the scale of the steps; null where a neighbour cannot be computed or it is not positive. */
@@ -145,7 +159,7 @@ function observedInformation(model: Climb, theta: Float64Array): Float64Array[] 
     const unit = free.map((_, b) => (a === b ? DIFFERENCE : 0));
     const [up, down] = [unit, unit.map((d) => -d)].map((step) => {
       const place = moved(model.structure, theta, Float64Array.from(step));
-      const there = likelihoodAt({ ...model, theta: place });
+      const there = scoreAt({ ...model, theta: place });
       return there && inSteps(model.structure, place, there);
     });
     if (!up || !down) return null;

@@ -14,12 +14,7 @@ export function rowSlopes(
   return slopes;
 }
 
-/**
- * Score and expected information of one likelihood.
- *
- * rows, weighed: the least-squares solution at theta; slopes: d_i unit_i / v of each free parameter, a row. Formulas: `likelihoodAt`.
- */
-export function derivativesOf(model: {
+interface Derived {
   readonly rows: LikelihoodRows;
   readonly weighed: {
     readonly relative: Float64Array;
@@ -28,35 +23,61 @@ export function derivativesOf(model: {
   };
   readonly slopes: readonly Float64Array[];
   readonly restricted: boolean;
-}): { readonly score: Float64Array; readonly information: readonly Float64Array[] } {
-  const { rows, weighed, slopes, restricted } = model;
-  const { relative, residuals, factor } = weighed;
-  const { terms: k, basis, count } = rows;
+}
+
+/**
+ * Score of one likelihood.
+ *
+ * rows, weighed: the least-squares solution at theta; slopes: d_i unit_i / v of each free parameter, a row. Formulas: `likelihoodAt`.
+ */
+export function scoreOf(model: Derived): Float64Array {
+  const score = new Float64Array(model.slopes.length);
+  const { relative, residuals } = model.weighed;
+  overRows(model, (g, leverage) => {
+    const square = (relative[g] as number) * (residuals[g] as number) * (residuals[g] as number);
+    const excess = (square - ((model.rows.count[g] as number) - leverage)) / 2;
+    for (let a = 0; a < score.length; a++)
+      score[a] = (score[a] as number) + ((model.slopes[a] as Float64Array)[g] as number) * excess;
+  });
+  return score;
+}
+
+/** Expected information of one likelihood, as rows; what it takes as in `scoreOf`. */
+export function informationOf(model: Derived): Float64Array[] {
+  const { rows, slopes, restricted } = model;
+  const { relative } = model.weighed;
   const q = slopes.length;
-  const score = new Float64Array(q);
   const information = slopes.map(() => new Float64Array(q));
-  const spreads = slopes.map(() => new Float64Array(k * k));
+  const spreads = slopes.map(() => new Float64Array(rows.terms * rows.terms));
+  overRows(model, (g, leverage, z) => {
+    const left = ((rows.count[g] as number) - 2 * leverage) / 2;
+    for (let a = 0; a < q; a++) {
+      const d = (slopes[a] as Float64Array)[g] as number;
+      const row = information[a] as Float64Array;
+      for (let b = 0; b <= a; b++) row[b] = (row[b] as number) + d * ((slopes[b] as Float64Array)[g] as number) * left;
+      if (restricted) addOuter(spreads[a] as Float64Array, z, d * (relative[g] as number));
+    }
+  });
+  return completed(information, spreads, rows.terms);
+}
+
+/** Visits every row with its leverage (0 under the full likelihood) and L^-1 q, which is overwritten from row to row. */
+function overRows(
+  { rows, weighed, restricted }: Derived,
+  visit: (g: number, leverage: number, z: Float64Array) => void,
+): void {
+  const { terms: k, basis } = rows;
+  const { relative, factor } = weighed;
   const z = new Float64Array(k);
   for (let g = 0, at = 0; g < relative.length; g++, at += k) {
-    const w = relative[g] as number;
-    const square = w * (residuals[g] as number) * (residuals[g] as number);
-    const cells = count[g] as number;
     let leverage = 0;
     if (restricted) {
       for (let i = 0; i < k; i++) z[i] = basis[at + i] as number;
       forwardInPlace(factor, z, k);
-      for (let i = 0; i < k; i++) leverage += w * (z[i] as number) * (z[i] as number);
+      for (let i = 0; i < k; i++) leverage += (relative[g] as number) * (z[i] as number) * (z[i] as number);
     }
-    for (let a = 0; a < q; a++) {
-      const d = (slopes[a] as Float64Array)[g] as number;
-      score[a] = (score[a] as number) + (d / 2) * (square - (cells - leverage));
-      const row = information[a] as Float64Array;
-      for (let b = 0; b <= a; b++)
-        row[b] = (row[b] as number) + (d / 2) * ((slopes[b] as Float64Array)[g] as number) * (cells - 2 * leverage);
-      if (restricted) addOuter(spreads[a] as Float64Array, z, d * w);
-    }
+    visit(g, leverage, z);
   }
-  return { score, information: completed(information, spreads, k) };
 }
 
 /** Adds tr(S_i S_j) / 2 and mirrors the lower triangle. */

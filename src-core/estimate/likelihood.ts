@@ -1,7 +1,7 @@
 import { largestOf, powerOfTwoBelow } from '../algebra/powers-of-two';
 import { freeParameters, type Structure } from '../model/structure';
 import { log } from '../numbers/elementary';
-import { derivativesOf, rowSlopes } from './likelihood-derivatives';
+import { informationOf, rowSlopes, scoreOf } from './likelihood-derivatives';
 import type { LikelihoodRows } from './likelihood-rows';
 import { type WeighedRows, weighedRows } from './weighed-rows';
 
@@ -52,10 +52,23 @@ interface Weighed extends Height, WeighedRows {
  * pseudo-likelihood. Null where a variance is not above 0 or so far from the middle that nothing can be computed.
  */
 export function likelihoodAt(place: LikelihoodPlace): Likelihood | null {
-  const { rows, structure, restricted, theta } = place;
   const weighed = weigh(place);
   if (!weighed) return null;
-  const { logLikelihood, scaleRatio, rescaled, variances } = weighed;
+  const { logLikelihood, scaleRatio, rescaled } = weighed;
+  const { units, derived } = derivedOf(place, weighed);
+  return { logLikelihood, scaleRatio, rescaled, units, score: scoreOf(derived), information: informationOf(derived) };
+}
+
+/** The score alone, in units of its own: a fraction of the work where there are many coefficients. */
+export function scoreAt(place: LikelihoodPlace): Pick<Likelihood, 'units' | 'score'> | null {
+  const weighed = weigh(place);
+  if (!weighed) return null;
+  const { units, derived } = derivedOf(place, weighed);
+  return { units, score: scoreOf(derived) };
+}
+
+function derivedOf({ rows, structure, restricted, theta }: LikelihoodPlace, weighed: Weighed) {
+  const { variances } = weighed;
   const derivatives = structure.derivativesAt(theta);
   const free = freeParameters(structure);
   const units = Float64Array.from(free, (i) =>
@@ -64,7 +77,7 @@ export function likelihoodAt(place: LikelihoodPlace): Likelihood | null {
   const slopes = free.map((i, a) =>
     rowSlopes(rows, { derivative: derivatives[i] as Float64Array, unit: units[a] as number, variances }),
   );
-  return { logLikelihood, scaleRatio, rescaled, units, ...derivativesOf({ rows, weighed, slopes, restricted }) };
+  return { units, derived: { rows, weighed, slopes, restricted } };
 }
 
 /** Largest variance over largest derivative: neither is a sum, so that cells of any spread do not overflow. */

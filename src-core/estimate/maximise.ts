@@ -1,14 +1,17 @@
 import { freeParameters, interiorPoint, type Structure, withFixed } from '../model/structure';
 import { done, type Outcome, refuse } from '../protocol/outcome';
 import { type Arrival, bestScale, type Climb, climb, type Place, scalesTogether } from './ascent';
+import { leavingBoundary } from './follow';
 import type { Hooks } from './hooks';
-import { freedomOf, heightAt, likelihoodAt } from './likelihood';
+import { freedomOf, heightAt } from './likelihood';
 import { startsOf } from './starts';
 
 /** Climbs at most, besides those that begin on a boundary. */
 const CLIMBS = 4;
 /** An interior maximum must be this much higher than the boundary to be told from it, where the boundary is a maximum itself. */
 const HIGHER = 1e-10;
+/** A climb that was lost this much higher than any maximum was on its way to something that is none of them. */
+const FAR_HIGHER = 1e-6;
 
 /** The highest point of a likelihood over its parameters. */
 export interface Maximum {
@@ -88,19 +91,6 @@ function boundaries({ parameters, scaleAt, betweenAt, exponentAt }: Structure): 
   return names;
 }
 
-/** A start just inside the boundary, where the likelihood rises from it. */
-function leavingBoundary(model: Climb, name: string, top: Maximum): Float64Array[] {
-  const at = likelihoodAt({ ...model, theta: top.theta });
-  const index = model.structure.parameters.findIndex((parameter) => parameter.name === name);
-  const place = freeParameters(model.structure).indexOf(index);
-  const score = at?.score[place] as number;
-  const information = at?.information[place]?.[place] as number;
-  if (!at || !(score > 1e-9 * Math.sqrt(information))) return [];
-  const theta = top.theta.slice();
-  theta[index] = (score / information) * (at.units[place] as number);
-  return [theta];
-}
-
 function highest(model: Climb, arrivals: readonly Arrival[], edges: readonly Edge[]): Outcome<Maximum> {
   let startsTried = arrivals.length;
   let edge: (Maximum & { readonly rises: boolean }) | null = null;
@@ -111,11 +101,15 @@ function highest(model: Climb, arrivals: readonly Arrival[], edges: readonly Edg
     edge = { ...top.value, atBoundary: [...top.value.atBoundary, name], rises: inside.length > 0 };
   }
   let top: Place | null = null;
-  for (const arrival of arrivals)
+  let lost: Extract<Arrival, { ended: 'lost' }> | null = null;
+  for (const arrival of arrivals) {
     if (arrival.ended === 'maximum' && (!top || arrival.logLikelihood > top.logLikelihood)) top = arrival;
+    if (arrival.ended === 'lost' && (!lost || arrival.logLikelihood > lost.logLikelihood)) lost = arrival;
+  }
+  const highestFound = Math.max(top?.logLikelihood ?? -Infinity, edge?.logLikelihood ?? -Infinity);
+  if (lost && lost.logLikelihood > highestFound + FAR_HIGHER) return notFound(model, lost);
   if (top && (!edge || top.logLikelihood > edge.logLikelihood + (edge.rises ? -HIGHER : HIGHER)))
     return done({ theta: top.theta, logLikelihood: top.logLikelihood, atBoundary: [], startsTried });
-  const lost = arrivals.find((arrival) => arrival.ended === 'lost');
   if (edge && !(edge.rises && lost)) {
     const { theta, logLikelihood, atBoundary } = edge;
     return done({ theta, logLikelihood, atBoundary, startsTried });

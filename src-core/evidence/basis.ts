@@ -30,10 +30,17 @@ export function basisOf(columns: readonly Float64Array[], start: readonly Float6
 export function projectOut(
   basis: readonly Float64Array[],
   y: Float64Array,
-  into = new Float64Array(y.length),
+  into: Float64Array = new Float64Array(y.length),
 ): Float64Array {
   into.set(y);
   for (const vector of basis) subtract(into, vector, dot(vector, into));
+  return into;
+}
+
+/** The projection of y on an orthonormal basis, into `into`. */
+export function projectOnto(basis: readonly Float64Array[], y: Float64Array, into: Float64Array): Float64Array {
+  into.fill(0);
+  for (const vector of basis) subtract(into, vector, -dot(vector, y));
   return into;
 }
 

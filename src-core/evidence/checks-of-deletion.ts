@@ -17,16 +17,13 @@ export function deletionChecks({ fitted }: { readonly fitted: Fitted }): SelfChe
   const extreme = extremeOf(fitted, shifts, units);
   const { shares } = concentrationOf(fitted.targetIsStructure ? fitted.shape : fitted.weighting);
   const heaviest = shares.reduce((most, share, g) => (share > (shares[most] as number) ? g : most), 0);
-  // Coefficients are told to a rounding that may be large beside errors near 0.
-  const rounding = fitted.coefficients.map((b, j) => (Math.abs(b) / (units[j] as number)) * 8 * Number.EPSILON);
-  const limit = Math.max(1e-8, fitted.condition * 1e-13, ...rounding);
   const found: SelfCheck[] = [];
   if (extreme) {
-    const apart = apartFrom(fitted, shifts, units, extreme.cell);
-    if (apart !== null) found.push({ check: 'leave-one-out-extreme', passed: apart <= limit, figure: extreme.shift });
+    const refit = refitWithout(fitted, shifts, extreme.cell);
+    if (refit) found.push({ check: 'leave-one-out-extreme', passed: refit.agrees, figure: extreme.shift });
   }
-  const apart = apartFrom(fitted, shifts, units, heaviest);
-  if (apart !== null) found.push({ check: 'heaviest-deleted', passed: apart <= limit, figure: apart });
+  const refit = refitWithout(fitted, shifts, heaviest);
+  if (refit) found.push({ check: 'heaviest-deleted', passed: refit.agrees, figure: refit.apart });
   return found;
 }
 
@@ -47,20 +44,28 @@ function extremeOf(
   return most;
 }
 
-/** How far the refit without a cell is from the formula, in errors; null where there is neither. */
-function apartFrom(
+/**
+ * How far the refit without a cell is from the formula, in errors, and whether that is rounding; null where there is neither. Rounding is that of the
+ * design, of the coefficients told (large beside errors near 0), and of 1 - h (large beside a leverage near 1).
+ */
+function refitWithout(
   fitted: Fitted,
   shifts: readonly Float64Array[],
-  units: readonly number[],
   cell: number,
-): number | null {
+): { readonly apart: number; readonly agrees: boolean } | null {
   const left = heldFit(fitted, placesWithout(fitted.whitened.length, new Set([cell])));
   if (!left) return null;
-  let worst = 0;
+  const open = 1 - (fitted.leverages[cell] as number);
+  let apart = 0;
+  let agrees = true;
   for (const [j, b] of fitted.coefficients.entries()) {
     const byFormula = shifts[j]?.[cell] as number;
     if (Number.isNaN(byFormula)) return null;
-    worst = Math.max(worst, Math.abs(b - byFormula - (left.coefficients[j] as number)) / (units[j] as number));
+    const error = fitted.errors[j] as number;
+    const own = Math.abs(b - byFormula - (left.coefficients[j] as number)) / error;
+    const rounding = (8 * Number.EPSILON * (Math.abs(b) + Math.abs(byFormula) / open)) / error;
+    apart = Math.max(apart, own);
+    agrees &&= own <= Math.max(1e-8, fitted.condition * 1e-13) + rounding;
   }
-  return worst;
+  return { apart, agrees };
 }

@@ -1,5 +1,5 @@
 import { chiSquareUpperQuantile, normalUpper } from '../numbers/distributions';
-import { basisOf, dot, projectOut, sumOfSquares } from './basis';
+import { basisOf, dot, sumOfSquares } from './basis';
 import { correlateBy, correlateInside } from './correlated-draws';
 import { normalRows } from './draws';
 import type { Frame } from './frame';
@@ -63,7 +63,7 @@ export function overCells({ frame, pairs }: Known): (rho: number) => Drawn {
   return (rho) => {
     const correlate = groups ? correlateInside(groups, rho) : correlateBy(pairs.partners ?? [], rho);
     const statistic = (draw: Float64Array) => {
-      projectOut(frame.basis, correlate(draw), residuals);
+      frame.leftOver(correlate(draw), residuals);
       return (scale * dot(residuals, partnerSums(pairs, residuals))) / sumOfSquares(residuals);
     };
     return { draws, statistic };

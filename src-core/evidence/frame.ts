@@ -4,6 +4,7 @@ import type { Fitted } from '../estimate/fitted';
 import type { Design } from '../model/design';
 import type { Plan } from '../protocol/plan';
 import type { Cells } from '../table/cells';
+import { basisOf, projectOnto, projectOut } from './basis';
 import { normalRows } from './draws';
 
 /** What every test of the structure reads: the cells in whitened coordinates, a free scale left out. */
@@ -18,6 +19,8 @@ export interface Frame {
   readonly freedom: number;
   /** Orthonormal basis of the whitened model columns, length G each. */
   readonly basis: readonly Float64Array[];
+  /** What the model leaves of whitened errors, into `into`: by the basis or by what stands at right angles to it, whichever has fewer vectors. */
+  readonly leftOver: (errors: Float64Array, into: Float64Array) => Float64Array;
   /** Whitened residuals of the fit weighted by the structure, whatever the target, in `unit`: their squares' squares neither run over nor under. */
   readonly residuals: Float64Array;
   /** A power of two near the largest whitened residual; 1 where all are 0. */
@@ -55,6 +58,7 @@ export function frameOf(known: {
     count,
     freedom: fitted.residualFreedom,
     basis,
+    leftOver: leftOverOf(basis, count),
     residuals: whitened.map((r) => r / unit),
     unit,
     perfect,
@@ -62,6 +66,13 @@ export function frameOf(known: {
     bySize: sizes && [...sizes.keys()].sort((a, b) => (sizes[a] as number) - (sizes[b] as number) || a - b),
     draws: () => (draws ??= normalRows(count)),
   };
+}
+
+function leftOverOf(basis: readonly Float64Array[], count: number): Frame['leftOver'] {
+  if (2 * basis.length <= count) return (errors, into) => projectOut(basis, errors, into);
+  const units = Array.from({ length: count }, (_, g) => new Float64Array(count).fill(1, g, g + 1));
+  const others = basisOf(units, basis).slice(0, count - basis.length);
+  return (errors, into) => projectOnto(others, errors, into);
 }
 
 /** The model of a fit under independent errors of other variances, up to a factor. */

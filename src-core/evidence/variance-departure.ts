@@ -1,7 +1,7 @@
 import { exp, log } from '../numbers/elementary';
 import type { NoDeparture } from '../protocol/evidence';
 import type { Evidence, SmallestDeparture } from '../protocol/result';
-import { leveragesOf, projectOut } from './basis';
+import { leveragesOf } from './basis';
 import { quartersOf } from './brown-forsythe';
 import { errorsUnder } from './departure-errors';
 import { MOST_SIMULATED, oftenEnough } from './draws';
@@ -70,7 +70,7 @@ function oftenFound(known: { frame: Frame; test: VarianceTest }, multipliers: Fl
   const residuals = new Float64Array(roots.length);
   return oftenEnough(frame.draws(), (draw) => {
     for (let g = 0; g < errors.length; g++) errors[g] = (draw[g] as number) * (roots[g] as number);
-    return test.strength(projectOut(frame.basis, errors, residuals)) > test.critical;
+    return test.strength(frame.leftOver(errors, residuals)) > test.critical;
   });
 }
 

@@ -1,5 +1,6 @@
 import { largestOf } from '../algebra/powers-of-two';
-import { climb, WIDEST_EXPONENT } from '../estimate/ascent';
+import { WIDEST_EXPONENT } from '../estimate/ascent';
+import { follow } from '../estimate/follow';
 import { maximise } from '../estimate/maximise';
 import { freeParameters, type Structure, withFixed } from '../model/structure';
 import { log } from '../numbers/elementary';
@@ -8,6 +9,8 @@ import { type Ends, type Profile, profileInterval } from './profile';
 
 /** How far apart, relative to its size, two log-likelihoods may stand and still be the same hill. */
 const SAME_HILL = 1e-10;
+/** How many hills are followed at most. */
+const HILLS = 3;
 
 type ProfileLikelihood = (value: number) => number | null;
 
@@ -15,8 +18,8 @@ type ProfileLikelihood = (value: number) => number | null;
  * Profile-likelihood interval of one variance parameter of a fit by full or restricted likelihood.
  *
  * index: of the parameter in the structure; step: about its standard error. Every value is judged with the other parameters at their best:
- * climbed to from the last value's, and searched for from all starts at the ends; where the two differ, everywhere.
- * Null ends where the fit has no likelihood, or a side is open.
+ * followed from the last value's, and searched for from all starts at the ends; where the search finds a higher hill, that is followed as well.
+ * Null ends where the fit has no likelihood, or a side is open. Nothing in an exponent beyond those that are searched counts as found.
  *
  * Example: the size exponent of 60 libraries, full likelihood: 0.2989 to 0.8728.
  */
@@ -34,14 +37,47 @@ export function parameterInterval(
     parameter.role === 'exponent'
       ? insideOf(WIDEST_EXPONENT, { of, estimate: value, maximum, level: asked.level, step })
       : profileInterval({ of, estimate: value, maximum, level: asked.level, floor: 0, ceiling: Infinity, step });
-  const free = freeParameters(structure);
-  if (free.length === 1 && structure.commonScale) return ends(scaleProfile(likelihoods));
-  const searched = searchedProfile(likelihoods, asked.index);
-  if (free.length === 1) return ends(searched);
-  const climbed = climbedProfile(likelihoods, asked.index, searched);
-  const found = ends(climbed);
-  const agree = [found.low, found.high].every((end) => end === null || sameHill(climbed(end), searched(end)));
-  return agree ? found : ends(searched);
+  if (freeParameters(structure).length === 1 && structure.commonScale) return ends(scaleProfile(likelihoods));
+  return overHills(likelihoods, asked.index, ends);
+}
+
+/** The ends over the hills that are known, until a search at the ends finds no higher one. */
+function overHills({ fitted, rows }: Likelihoods, index: number, ends: (of: ProfileLikelihood) => Ends): Ends {
+  const { structure } = fitted;
+  const name = structure.parameters[index]?.name as string;
+  const at = (value: number) => ({
+    rows,
+    structure: withFixed(structure, name, value),
+    restricted: isRestricted(fitted),
+  });
+  const nothing = (value: number) => value === 0 && index === structure.scaleAt && structure.betweenAt < 0;
+  const hills = [fitted.theta];
+  const followed: ProfileLikelihood = (value) => {
+    if (nothing(value)) return -Infinity;
+    let highest: number | null = null;
+    for (const [i, from] of hills.entries()) {
+      const place = follow({ ...at(value), heightOnly: true }, from.with(index, value));
+      if (!place) continue;
+      hills[i] = place.theta;
+      highest = Math.max(highest ?? -Infinity, place.logLikelihood);
+    }
+    return highest;
+  };
+  for (;;) {
+    const found = ends(followed);
+    if (hills.length === HILLS || freeParameters(structure).length === 1) return found;
+    const higher = [found.low, found.high].flatMap((end) => {
+      const searched = end === null || nothing(end) ? null : maximise(at(end));
+      const known = end === null ? null : followed(end);
+      return searched?.ok && !sameHill(searched.value.logLikelihood, known) ? [searched.value.theta] : [];
+    });
+    if (higher.length === 0) return found;
+    hills.push(...higher.slice(0, HILLS - hills.length));
+  }
+}
+
+function sameHill(searched: number, followed: number | null): boolean {
+  return followed !== null && searched - followed <= SAME_HILL * (1 + Math.abs(searched));
 }
 
 /** The parameter's own value, or for a variance at 0 the size of the others. */
@@ -55,40 +91,6 @@ function sizeOf(structure: Structure, theta: Float64Array, index: number): numbe
 function insideOf(widest: number, profile: Omit<Profile, 'floor' | 'ceiling'>): Ends {
   const { low, high } = profileInterval({ ...profile, floor: -widest, ceiling: widest });
   return { low: low === -widest ? null : low, high: high === widest ? null : high };
-}
-
-function sameHill(one: number | null, other: number | null): boolean {
-  if (one === null || other === null) return one === other;
-  if (one === other) return true;
-  return Math.abs(one - other) <= SAME_HILL * (1 + Math.abs(one));
-}
-
-/** The parameter held at a value, the others searched for from all starts. */
-function searchedProfile({ fitted, rows }: Likelihoods, index: number): ProfileLikelihood {
-  const { structure } = fitted;
-  const name = structure.parameters[index]?.name as string;
-  const restricted = isRestricted(fitted);
-  return (value) => {
-    if (value === 0 && index === structure.scaleAt && structure.betweenAt < 0) return -Infinity;
-    const found = maximise({ rows, structure: withFixed(structure, name, value), restricted });
-    return found.ok ? found.value.logLikelihood : null;
-  };
-}
-
-/** The same by climbing from where the last value's climb ended; searched where that leads nowhere. */
-function climbedProfile({ fitted, rows }: Likelihoods, index: number, searched: ProfileLikelihood): ProfileLikelihood {
-  const { structure } = fitted;
-  const name = structure.parameters[index]?.name as string;
-  const restricted = isRestricted(fitted);
-  let from = fitted.theta;
-  return (value) => {
-    const start = from.with(index, value);
-    const arrival =
-      value === 0 ? null : climb({ rows, structure: withFixed(structure, name, value), restricted }, start);
-    if (arrival?.ended !== 'maximum') return searched(value);
-    from = arrival.theta;
-    return arrival.logLikelihood;
-  };
 }
 
 /** One common scale alone: l(phi) = l_max - N/2 [ln(phi / phi^) + phi^ / phi - 1], N the likelihood's own divisor. */

@@ -4,7 +4,9 @@ import { findRoot } from '../numbers/roots';
 /** How often a step outward is doubled before a side is given up as open. */
 const DOUBLINGS = 80;
 /** How often the way to a point where the likelihood cannot be had is halved in search of one where it has fallen far enough. */
-const HALVINGS = 20;
+const HALVINGS = 8;
+/** How finely an end is solved for, as a share of the larger end of the stretch on which it lies. */
+const FINE = 1e-13;
 /** The first step outward, in standard errors: a little further than the end of a usual interval. */
 const STRIDE = 2.2;
 /** A likelihood that falls further than this counts as having fallen this far, so that a fall to nothing stays a number. */
@@ -89,5 +91,5 @@ function crossing(excess: Excess, inside: number, outside: number): number | nul
   const low = Math.min(inside, outside);
   const high = Math.max(inside, outside);
   const of = (value: number) => excess(value) ?? Number.NaN;
-  return findRoot({ of, low, high, tolerance: 1e-14 * Math.max(Math.abs(low), Math.abs(high)) });
+  return findRoot({ of, low, high, tolerance: FINE * Math.max(Math.abs(low), Math.abs(high)) });
 }

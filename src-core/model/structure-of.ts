@@ -1,7 +1,7 @@
 import { log, pow } from '../numbers/elementary';
 import { done, type Outcome, problem, refuse, refuseAll } from '../protocol/outcome';
 import type { Part, Rival, Variance } from '../protocol/plan';
-import type { Problem } from '../protocol/problems';
+import type { Problem, Troubles } from '../protocol/problems';
 import type { Cells } from '../table/cells';
 import { joinParts, type SamplingPart, type Structure } from './structure';
 
@@ -21,8 +21,8 @@ export function varianceOf(rival: Rival): Variance {
  *     v_g = phi a_g + tau^2,  a_g: 1 | 1/m_g | s_g^2 | m_g^-delta | z_g^delta
  *
  * variance: one sampling part, at most one between part, as the form of the plan was checked; cells: with the roles that they need.
- * Refuses parts that this version does not fit and correlations (`not-available`, at their place), all together, and a proxy that is not above 0
- * (`transform-undefined`, as its log would be).
+ * Refuses parts that this version does not fit and correlations (`not-available`, at their place), all together; a proxy that is not above 0
+ * (`transform-undefined`, as its log would be), and a cell whose variance runs over or under (the same, naming the power).
  *
  * at: pointer to the variance value, "/variance" in a plan.
  */
@@ -40,6 +40,8 @@ export function structureOf(model: {
   if (!part) throw new RangeError('no sampling part: the form of the plan was not checked');
   const sampling = samplingOf(part, cells, `${at}/parts/${index}`);
   if (!sampling.ok) return sampling;
+  const lost = outOfRange({ part, sampling: sampling.value, cells, exponent: fixed['delta'] ?? 1 });
+  if (lost) return refuse('transform-undefined', lost, `${at}/parts/${index}`);
   const place = parts.findIndex(({ kind }) => kind === 'between');
   const between = place < 0 ? 'none' : place < index ? 'first' : 'last';
   return done(joinParts({ cells: cells.count, sampling: sampling.value, between, fixed }));
@@ -92,6 +94,29 @@ function samplingOf(part: Part, cells: Cells, at: string): Outcome<SamplingPart>
   );
 }
 
+/** The first cell whose a_g is 0 or not finite. */
+function outOfRange(of: {
+  readonly part: Part;
+  readonly sampling: SamplingPart;
+  readonly cells: Cells;
+  readonly exponent: number;
+}): Troubles['transform-undefined'] | null {
+  const { part, sampling, cells, exponent } = of;
+  const wrong = sampling.at(exponent).findIndex((a) => !(a > 0 && a < Infinity));
+  if (wrong < 0) return null;
+  const { size, error } = cells.plan.roles;
+  const delta = 'exponent' in part && typeof part.exponent === 'number' ? part.exponent : exponent;
+  const [column, power] =
+    part.kind === 'given' ? [error, 2] : part.kind === 'proxy' ? [part.column, delta] : [size, -delta];
+  return {
+    file: cells.plan.data.file,
+    row: cells.rows[wrong] as number,
+    column: column as string,
+    found: cells.numbers(column as string).texts[wrong] as string,
+    transform: `power ${power}`,
+  };
+}
+
 function sizesOf(cells: Cells): Float64Array {
   if (!cells.effectiveSize) throw new RangeError('sizes are needed: the form of the plan was not checked');
   return cells.effectiveSize;
@@ -101,18 +126,25 @@ function plain(kind: SamplingPart['kind'], scale: 'fixed' | 'free', sampling: Fl
   return { kind, scale, at: () => sampling, slopeAt: null };
 }
 
-/** base^(sign delta), with exponents 0 and 1 exact, so that they equal the constant and the per-size structure to the last digit. */
+/**
+ * base^(sign delta), each distinct base raised once; exponents 0 and 1 exact, so that they equal the constant and the per-size structure to the
+ * last digit.
+ */
 function powers(
   part: { kind: 'size-power' | 'proxy'; exponent: number | 'estimate' },
   base: Float64Array,
   sign: 1 | -1,
 ): SamplingPart {
   const { kind, exponent } = part;
+  const distinct = [...new Set(base)];
+  const places = new Map(distinct.map((x, i) => [x, i]));
+  const placeOf = Int32Array.from(base, (x) => places.get(x) as number);
   const logs = base.map(log);
   const at = (delta: number) => {
     if (delta === 0) return new Float64Array(base.length).fill(1);
     if (delta === 1) return sign === 1 ? base.slice() : base.map((x) => 1 / x);
-    return base.map((x) => pow(x, sign * delta));
+    const powers = distinct.map((x) => pow(x, sign * delta));
+    return Float64Array.from(placeOf, (i) => powers[i] as number);
   };
   if (exponent !== 'estimate') return plain(kind, 'free', at(exponent));
   return { kind, scale: 'free', at, slopeAt: (delta) => at(delta).map((a, g) => sign * (logs[g] as number) * a) };
