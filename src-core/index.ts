@@ -3,6 +3,8 @@ export { checkModel } from './inference/check-model';
 export { readPlan } from './protocol/read';
 export { type EditionFacts, reportOf } from './report/report-of';
 export { type Declarations, declarationsFor, isSetAside, withoutMarks } from './table/declarations';
+export { lookAtCells } from './table/look';
 export { groupMarks, plainNumberIn, trimmed } from './table/number-text';
 export { filesOf } from './table/plan-files';
 export { prepareCells } from './table/prepare-cells';
+export { replaceData } from './table/replace-data';

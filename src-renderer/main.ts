@@ -1,7 +1,7 @@
 import { mount } from 'svelte';
-import Page from './Page.svelte';
+import App from './App.svelte';
 import './theme/page.css';
 
 const target = document.getElementById('page');
 if (!target) throw new Error('index.html holds no place for the page');
-mount(Page, { target });
+mount(App, { target });

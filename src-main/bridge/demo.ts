@@ -1,14 +1,25 @@
 import { join } from 'node:path';
-import { done } from '@core/protocol/outcome';
-import { coefficientLines } from '@core/words/coefficients';
-import { runPlan } from '../engine/run-plan';
-import type { Handlers } from './answer';
+import { readPlan } from '@core/index';
+import type { Outcome } from '@core/protocol/outcome';
+import { fromFolder, gather } from '../engine/inputs';
+import { readPlanFile } from '../engine/run-plan';
+import { inProject } from '../project/in-project';
 
-/** The demo's coefficients as lines of text. */
-export const demoHandlers = (resources: string): Pick<Handlers, 'demo.coefficients'> => ({
-  'demo.coefficients': async () => {
-    const run = await runPlan({ planFile: join(resources, 'demo/plan.json') });
-    if (!run.ok) return run;
-    return done({ title: run.value.result.plan.title, lines: coefficientLines(run.value.result) });
-  },
-});
+/** Makes a project of the demo's plan and files. folder: that holds plan.json and the files that it names. */
+export async function makeDemo(file: string, folder: string): Promise<Outcome<number>> {
+  const text = readPlanFile(join(folder, 'plan.json'));
+  if (!text.ok) return text;
+  const plan = readPlan(text.value);
+  if (!plan.ok) return plan;
+  const { inputs } = gather(plan.value, fromFolder(folder));
+  return inProject(file, {}, (project) =>
+    project.together(async () => {
+      for (const { bytes } of inputs) {
+        const kept = project.keepInput(bytes);
+        if (!kept.ok) return kept;
+      }
+      const named = inputs.map(({ name, sha256 }) => ({ name, sha256 }));
+      return project.addPlan({ name: plan.value.title, plan: plan.value, inputs: named });
+    }),
+  );
+}

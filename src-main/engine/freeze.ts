@@ -1,4 +1,5 @@
 import { basename } from 'node:path';
+import type { EditionFacts } from '@core/index';
 import { done, type Outcome, refuse } from '@core/protocol/outcome';
 import type { Hooks } from '@core/protocol/source';
 import { inProject } from '../project/in-project';
@@ -44,16 +45,39 @@ export async function freezePlan({
 export function freezeRun(run: Run, freezing: Freezing): Promise<Outcome<Frozen>> {
   const { author, time, hooks = unhurried } = freezing;
   return inProject(freezing.project, { clock: () => time }, (project) =>
-    project.together(async () => {
-      const kept = keep(project, run, freezing);
-      if (!kept.ok) return kept;
-      const facts = project.nextEdition(author, basename(freezing.project, '.steelyard'));
-      const report = await printedReport(run.result, facts);
-      if (hooks.cancelled()) return refuse('cancelled', {});
-      const head = project.freezeEdition({ fit: kept.value, facts, report });
-      return head.ok ? done({ number: facts.number, head: head.value }) : head;
+    freezeKept(project, {
+      author,
+      name: basename(freezing.project, '.steelyard'),
+      keep: () => keep(project, run, freezing),
+      print: async (facts) => {
+        const report = await printedReport(run.result, facts);
+        return hooks.cancelled() ? refuse('cancelled', {}) : done(report);
+      },
     }),
   );
+}
+
+/** Keeps a fit of an open project and freezes it with its printed report as the next edition: all of it, or nothing. */
+export function freezeKept(
+  project: Project,
+  freezing: {
+    readonly author: string;
+    /** The project's name, as the report prints it. */
+    readonly name: string;
+    /** Keeps what is to be frozen; answers the fit's number. */
+    readonly keep: () => Outcome<number>;
+    readonly print: (facts: EditionFacts) => Promise<Outcome<Uint8Array>>;
+  },
+): Promise<Outcome<Frozen>> {
+  return project.together(async () => {
+    const fit = freezing.keep();
+    if (!fit.ok) return fit;
+    const facts = project.nextEdition(freezing.author, freezing.name);
+    const report = await freezing.print(facts);
+    if (!report.ok) return report;
+    const head = project.freezeEdition({ fit: fit.value, facts, report: report.value });
+    return head.ok ? done({ number: facts.number, head: head.value }) : head;
+  });
 }
 
 /** Keeps inputs, plan and result; answers the fit's number. What the project has already is not kept twice. */

@@ -5,7 +5,7 @@ import { checkModel, prepareCells, readPlan } from '@core/index';
 import { done, type Outcome, refuse } from '@core/protocol/outcome';
 import type { Plan } from '@core/protocol/plan';
 import type { Result } from '@core/protocol/result';
-import type { Hooks } from '@core/protocol/source';
+import type { Hooks, SourceTable } from '@core/protocol/source';
 import { type Fetch, fromFolder, gather, type Input } from './inputs';
 
 /** A plan with all that its fit took and gave. */
@@ -35,12 +35,20 @@ export function runText(ask: { readonly text: string; readonly fetch: Fetch; rea
   if (!plan.ok) return plan;
   hooks.progress('read', 0);
   const { inputs, sources } = gather(plan.value, ask.fetch);
-  const cells = prepareCells({ plan: plan.value, sources });
+  const result = fitSources({ plan: plan.value, sources, hooks });
+  return result.ok ? done({ plan: plan.value, inputs, result: result.value }) : result;
+}
+
+/** From a plan in its normal form and its tables to the result: data, model, fit. */
+export function fitSources(of: {
+  readonly plan: Plan;
+  readonly sources: ReadonlyMap<string, Outcome<SourceTable>>;
+  readonly hooks: Hooks;
+}): Outcome<Result> {
+  const cells = prepareCells(of);
   if (!cells.ok) return cells;
-  const result = analyse({ plan: plan.value, cells: cells.value, hooks });
-  if (!result.ok) return result;
-  if (hooks.cancelled()) return refuse('cancelled', {});
-  return done({ plan: plan.value, inputs, result: result.value });
+  const result = analyse({ plan: of.plan, cells: cells.value, hooks: of.hooks });
+  return result.ok && of.hooks.cancelled() ? refuse('cancelled', {}) : result;
 }
 
 /** Everything short of the fit: the normal form, or every refusal of the first stage that has any. */

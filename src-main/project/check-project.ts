@@ -1,5 +1,5 @@
 import { resolve } from 'node:path';
-import { done, type Outcome, problem, type Refusal, refuseAll } from '@core/protocol/outcome';
+import { done, type Outcome, problem, type Refusal, refuse, refuseAll } from '@core/protocol/outcome';
 import type { Problem } from '@core/protocol/problems';
 import type { Result } from '@core/protocol/result';
 import { checkLayout, connect, usual } from './connection';
@@ -62,16 +62,45 @@ async function rebuildAll(store: Store, rebuild: Rebuild, trail: WholeTrail): Pr
   const found: CheckReport['editions'][number][] = [];
   const problems: Problem[] = [];
   for (const edition of editions(store)) {
-    const rebuilt = await rebuild(edition, (name) => {
-      const input = edition.inputs.find((one) => one.name === name);
-      return input === undefined ? null : inputBytes(store, input.sha256);
-    });
-    if (!rebuilt.ok && isCancelled(rebuilt)) return rebuilt;
-    const how = rebuilt.ok && versionIn(rebuilt.value.result) !== versionIn(edition.result) ? 'numbers' : 'bytes';
-    problems.push(...(rebuilt.ok ? await compare(edition, rebuilt.value, how) : notRebuilt(edition, rebuilt)));
-    found.push({ number: edition.number, how });
+    const one = await rebuildOne(store, edition, rebuild);
+    if (!one.ok) return one;
+    const { number, how } = one.value;
+    problems.push(...one.value.problems);
+    found.push({ number, how });
   }
   return problems.length > 0 ? refuseAll(problems) : done({ ...trail, editions: found });
+}
+
+/** What was found of one edition: as it lies in the file, and made again. */
+export interface CheckedEdition {
+  readonly number: number;
+  readonly how: 'bytes' | 'numbers';
+  /** Empty where it stands. */
+  readonly problems: readonly Problem[];
+}
+
+/**
+ * Holds one edition of an open project against the trail, makes it again and compares: see `checkProject`.
+ *
+ * Refusals: no such edition, `cancelled`.
+ */
+export async function checkEdition(store: Store, number: number, rebuild: Rebuild): Promise<Outcome<CheckedEdition>> {
+  const [edition] = editions(store, number);
+  if (edition === undefined) return refuse('no-edition', { file: store.file });
+  const problems = alteredEdition(store, edition, alteredInputs(store));
+  return problems.length > 0 ? done({ number, how: 'bytes', problems }) : rebuildOne(store, edition, rebuild);
+}
+
+/** Refusal: `cancelled` alone. */
+async function rebuildOne(store: Store, edition: Edition, rebuild: Rebuild): Promise<Outcome<CheckedEdition>> {
+  const rebuilt = await rebuild(edition, (name) => {
+    const input = edition.inputs.find((one) => one.name === name);
+    return input === undefined ? null : inputBytes(store, input.sha256);
+  });
+  if (!rebuilt.ok && isCancelled(rebuilt)) return rebuilt;
+  const how = rebuilt.ok && versionIn(rebuilt.value.result) !== versionIn(edition.result) ? 'numbers' : 'bytes';
+  const problems = rebuilt.ok ? await compare(edition, rebuilt.value, how) : notRebuilt(edition, rebuilt);
+  return done({ number: edition.number, how, problems });
 }
 
 function isCancelled({ problems }: Refusal): boolean {

@@ -7,13 +7,15 @@ import { upgrade } from './upgrade';
 
 export interface Access {
   readonly readonly: boolean;
+  /** No other program may open the file while this one has it open; `readonly` leaves it to others. */
+  readonly alone: boolean;
   /** How long to wait for another program that holds the file, in milliseconds. */
   readonly patience: number;
   /** The steps of the layout, the newest last. */
   readonly steps: readonly Step[];
 }
 
-export const usual: Access = { readonly: false, patience: 5000, steps };
+export const usual: Access = { readonly: false, alone: false, patience: 5000, steps };
 
 /** Settings that a connection needs before anything is read. */
 function settle(db: Database.Database, { readonly }: { readonly readonly: boolean }): void {
@@ -50,6 +52,7 @@ export function connect(file: string, access: Access = usual): Outcome<Database.
     const db = openOrRecover(file, access);
     try {
       const ready = makeReady(db, file, access);
+      if (ready.ok && access.alone && !access.readonly) holdAlone(db);
       if (ready.ok) return done(db);
       db.close();
       return ready;
@@ -58,6 +61,12 @@ export function connect(file: string, access: Access = usual): Outcome<Database.
       throw error;
     }
   });
+}
+
+/** Takes the file's lock and keeps it until the connection is closed, or its process is gone. */
+function holdAlone(db: Database.Database): void {
+  db.pragma('locking_mode = EXCLUSIVE');
+  db.exec('BEGIN EXCLUSIVE; COMMIT');
 }
 
 /** The first bytes tell a project before SQLite touches the file: SQLite's own mark at 0, the program's at 68. */

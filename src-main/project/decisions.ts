@@ -36,6 +36,20 @@ export function decisions(store: Store): readonly Decision[] {
   }));
 }
 
+/** Puts on record that the coefficients of interest are to be covered on every screen until the structure is accepted. */
+export function coverAnswer(store: Store, { author }: { readonly author: string }): Outcome<null> {
+  return change(store, () => {
+    record(store, { action: 'answer-covered', facts: {}, author });
+    return done(null);
+  });
+}
+
+/** Whether the answer is covered now: it was covered, and not uncovered since. */
+export function isAnswerCovered(store: Store): boolean {
+  const last = entries(store).findLast(({ action }) => action === 'answer-covered' || action === 'answer-uncovered');
+  return last?.action === 'answer-covered';
+}
+
 /** Puts on record that the coefficients of interest were uncovered: structures tried from here on were tried with the answer in view. */
 export function uncoverAnswer(store: Store, { author }: { readonly author: string }): Outcome<null> {
   return change(store, () => {

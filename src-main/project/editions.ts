@@ -89,12 +89,30 @@ interface Row extends Omit<Edition, 'facts' | 'inputs'> {
 
 const selected = `SELECT number, entry, edition.facts AS factsText, plan, result, report, state_id AS stateId,
   result_sha256 AS resultSha256, report_sha256 AS reportSha256
-FROM edition JOIN fit USING (fit_id) JOIN plan_state USING (state_id) ORDER BY number`;
+FROM edition JOIN fit USING (fit_id) JOIN plan_state USING (state_id) WHERE @number IS NULL OR number = @number ORDER BY number`;
 
-/** Every edition, the first first. */
-export function editions(store: Store): readonly Edition[] {
-  const rows = store.db.prepare(selected).all() as Row[];
-  return rows.map(({ stateId, ...row }) => ({
+/** What a list of editions shows of each. */
+export interface EditionHead {
+  readonly facts: EditionRecord;
+  /** Title of its plan. */
+  readonly title: string;
+}
+
+/** Every edition without plan, result and report, the first first. */
+export function editionHeads({ db }: Store): readonly EditionHead[] {
+  const rows = db
+    .prepare(
+      `SELECT edition.facts AS factsText, plan ->> '$.title' AS title
+       FROM edition JOIN fit USING (fit_id) JOIN plan_state USING (state_id) ORDER BY number`,
+    )
+    .all() as { readonly factsText: string; readonly title: string | null }[];
+  return rows.map(({ factsText, title }) => ({ facts: JSON.parse(factsText) as EditionRecord, title: title ?? '' }));
+}
+
+/** Every edition, or the one of a number; the first first. */
+export function editions(store: Store, number: number | null = null): readonly Edition[] {
+  const all = store.db.prepare(selected).all({ number }) as Row[];
+  return all.map(({ stateId, ...row }) => ({
     ...row,
     facts: JSON.parse(row.factsText) as EditionRecord,
     inputs: inputsOf(store, stateId),

@@ -41,12 +41,48 @@ export function keepFit(
   });
 }
 
-/** The structures of every fit that was kept, those of fits that were undone included. Without an uncovering on record the answer was in view throughout. */
+/** A fit that was kept, without its text. */
+export interface KeptFit {
+  readonly fit: number;
+  /** State of the plan that it is the fit of. */
+  readonly stateId: number;
+  /** The program's version that made it. */
+  readonly version: string;
+}
+
+/** Every fit of a plan, the last first. */
+export function fitsOf({ db }: Store, planId: number): readonly KeptFit[] {
+  return db
+    .prepare(
+      `SELECT fit_id AS fit, state_id AS stateId, result ->> '$.made.version' AS version
+       FROM fit JOIN plan_state USING (state_id) WHERE plan_id = ? ORDER BY fit_id DESC`,
+    )
+    .all(planId) as KeptFit[];
+}
+
+/** The result of a fit as the text that was kept; null where there is none of that number. */
+export function fitText({ db }: Store, fit: number): string | null {
+  const found = db.prepare('SELECT result FROM fit WHERE fit_id = ?').get(fit) as
+    | { readonly result: string }
+    | undefined;
+  return found?.result ?? null;
+}
+
+/**
+ * The structures of every fit that was kept, those of fits that were undone included.
+ *
+ * The answer was in view unless it was covered: from a covering on record to the uncovering after it, and from the start where an uncovering
+ * stands without a covering before it.
+ */
 export function structuresTried(store: Store): StructuresTried {
   const all = entries(store);
-  const uncovered = all.find(({ action }) => action === 'answer-uncovered')?.number ?? 0;
-  const fits = all.filter(({ action }) => action === 'fit-kept');
-  return countStructures(
-    fits.map(({ number, facts }) => ({ tried: facts['tried'] as readonly Tried[], inView: number > uncovered })),
-  );
+  let inView = all.find(({ action }) => coverings.has(action))?.action !== 'answer-uncovered';
+  const fits: { tried: readonly Tried[]; inView: boolean }[] = [];
+  for (const { action, facts } of all) {
+    if (coverings.has(action)) inView = action === 'answer-uncovered';
+    if (action === 'fit-kept') fits.push({ tried: facts['tried'] as readonly Tried[], inView });
+  }
+  return countStructures(fits);
 }
+
+const coverings: ReadonlySet<string> = new Set(['answer-covered', 'answer-uncovered']);

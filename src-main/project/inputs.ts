@@ -10,9 +10,12 @@ export interface NamedInput {
 /** Keeps the bytes of a file, once however often they come; answers their SHA-256. */
 export function keepInput({ db }: Store, bytes: Uint8Array): string {
   const sha256 = sha256Of(bytes);
-  const known = db.prepare('SELECT 1 FROM input WHERE sha256 = ?').get(sha256);
-  if (known === undefined) db.prepare('INSERT INTO input (sha256, bytes) VALUES (?, ?)').run(sha256, bytes);
+  if (!hasInput({ db }, sha256)) db.prepare('INSERT INTO input (sha256, bytes) VALUES (?, ?)').run(sha256, bytes);
   return sha256;
+}
+
+export function hasInput({ db }: Pick<Store, 'db'>, sha256: string): boolean {
+  return db.prepare('SELECT 1 FROM input WHERE sha256 = ?').get(sha256) !== undefined;
 }
 
 /** The bytes that were kept under a hash; null where there are none. */

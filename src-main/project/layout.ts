@@ -77,7 +77,16 @@ WHEN NEW.number <> (SELECT coalesce(max(number), 0) + 1 FROM trail)
 BEGIN SELECT RAISE(ABORT, 'append-only'); END;
 `;
 
-export const steps: readonly Step[] = [{ layout: 10, sql: first }];
+/** A plan on its way with its files: no part of the record, and the one thing in a project that can be taken out again. */
+const drafts = `
+CREATE TABLE draft (draft_id INTEGER PRIMARY KEY CHECK (draft_id = 1), text TEXT NOT NULL) STRICT;
+CREATE TABLE draft_input (sha256 TEXT NOT NULL PRIMARY KEY CHECK (length(sha256) = 64), bytes BLOB NOT NULL) STRICT;
+`;
+
+export const steps: readonly Step[] = [
+  { layout: 10, sql: first },
+  { layout: 20, sql: drafts },
+];
 
 /** The layout that a list of steps ends in. */
 export function lastOf(list: readonly Step[]): number {

@@ -1,11 +1,13 @@
 import { closeSync, existsSync, openSync } from 'node:fs';
 import { resolve } from 'node:path';
 import { done, type Outcome, refuse } from '@core/protocol/outcome';
+import { checkEdition } from './check-project';
 import { type Access, checkLayout, connect, makeEmpty, usual } from './connection';
-import { decide, decisions, signOff, signOffs, uncoverAnswer } from './decisions';
-import { editions, freezeEdition, nextEdition } from './editions';
-import { keepFit, structuresTried } from './fits';
-import { inputBytes, keepInput } from './inputs';
+import { coverAnswer, decide, decisions, isAnswerCovered, signOff, signOffs, uncoverAnswer } from './decisions';
+import { draft, draftBytes, hasDraftInput, keepDraft } from './draft';
+import { editionHeads, editions, freezeEdition, nextEdition } from './editions';
+import { fitsOf, fitText, keepFit, structuresTried } from './fits';
+import { hasInput, inputBytes, keepInput } from './inputs';
 import { notes, restoreNote, setNote } from './notes';
 import { addPlan, changePlan, plans, renamePlan, restorePlan } from './plans';
 import { freeOfJournal, saveAs } from './save-as';
@@ -24,6 +26,7 @@ type Bound<F> = F extends (store: Store, ...rest: infer Rest) => infer Answer ? 
 export interface Project {
   readonly file: string;
   readonly keepInput: (bytes: Uint8Array) => Outcome<string>;
+  readonly hasInput: Bound<typeof hasInput>;
   readonly inputBytes: Bound<typeof inputBytes>;
   readonly plans: Bound<typeof plans>;
   readonly addPlan: Bound<typeof addPlan>;
@@ -31,15 +34,23 @@ export interface Project {
   readonly renamePlan: Bound<typeof renamePlan>;
   readonly notes: Bound<typeof notes>;
   readonly setNote: Bound<typeof setNote>;
+  readonly draft: Bound<typeof draft>;
+  readonly draftBytes: Bound<typeof draftBytes>;
+  readonly hasDraftInput: Bound<typeof hasDraftInput>;
+  readonly keepDraft: Bound<typeof keepDraft>;
   readonly ways: Bound<typeof ways>;
   readonly undo: () => Outcome<string | null>;
   readonly redo: () => Outcome<string | null>;
   readonly decisions: Bound<typeof decisions>;
   readonly decide: Bound<typeof decide>;
+  readonly coverAnswer: Bound<typeof coverAnswer>;
+  readonly isAnswerCovered: Bound<typeof isAnswerCovered>;
   readonly uncoverAnswer: Bound<typeof uncoverAnswer>;
   readonly signOffs: Bound<typeof signOffs>;
   readonly signOff: Bound<typeof signOff>;
   readonly keepFit: Bound<typeof keepFit>;
+  readonly fitsOf: Bound<typeof fitsOf>;
+  readonly fitText: Bound<typeof fitText>;
   readonly structuresTried: Bound<typeof structuresTried>;
   readonly trail: Bound<typeof entries>;
   readonly trailHead: Bound<typeof headOf>;
@@ -47,6 +58,8 @@ export interface Project {
   readonly nextEdition: Bound<typeof nextEdition>;
   readonly freezeEdition: Bound<typeof freezeEdition>;
   readonly editions: Bound<typeof editions>;
+  readonly editionHeads: Bound<typeof editionHeads>;
+  readonly checkEdition: Bound<typeof checkEdition>;
   readonly saveAs: Bound<typeof saveAs>;
   /** Several changes as one, with waits between them: all kept, or none. */
   readonly together: <T>(work: () => Promise<Outcome<T>>) => Promise<Outcome<T>>;
@@ -114,6 +127,7 @@ function projectOf(store: Store): Project {
   return {
     file: store.file,
     keepInput: (bytes) => change(store, () => done(keepInput(store, bytes))),
+    hasInput: bound(hasInput),
     inputBytes: bound(inputBytes),
     plans: bound(plans),
     addPlan: bound(addPlan),
@@ -121,15 +135,23 @@ function projectOf(store: Store): Project {
     renamePlan: bound(renamePlan),
     notes: bound(notes),
     setNote: bound(setNote),
+    draft: bound(draft),
+    draftBytes: bound(draftBytes),
+    hasDraftInput: bound(hasDraftInput),
+    keepDraft: bound(keepDraft),
     ways: bound(ways),
     undo: () => goBack(store, 'undo', restore),
     redo: () => goBack(store, 'redo', restore),
     decisions: bound(decisions),
     decide: bound(decide),
+    coverAnswer: bound(coverAnswer),
+    isAnswerCovered: bound(isAnswerCovered),
     uncoverAnswer: bound(uncoverAnswer),
     signOffs: bound(signOffs),
     signOff: bound(signOff),
     keepFit: bound(keepFit),
+    fitsOf: bound(fitsOf),
+    fitText: bound(fitText),
     structuresTried: bound(structuresTried),
     trail: bound(entries),
     trailHead: bound(headOf),
@@ -137,6 +159,8 @@ function projectOf(store: Store): Project {
     nextEdition: bound(nextEdition),
     freezeEdition: bound(freezeEdition),
     editions: bound(editions),
+    editionHeads: bound(editionHeads),
+    checkEdition: bound(checkEdition),
     saveAs: bound(saveAs),
     together: (work) => changeTogether(store, work),
     close: () => void store.db.close(),

@@ -13,6 +13,7 @@ export type TrailAction =
   | 'redone'
   | 'fit-kept'
   | 'decided'
+  | 'answer-covered'
   | 'answer-uncovered'
   | 'frozen'
   | 'signed-off';

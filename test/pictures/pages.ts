@@ -1,7 +1,8 @@
-// `npm run pictures`: the pages of the demo's report as pictures for the README. Needs pdftoppm (Debian: poppler-utils).
+// `npm run pictures`: the pages of the demo's report and every screen as pictures for the README. Needs pdftoppm (Debian: poppler-utils).
 import { spawnSync } from 'node:child_process';
 import { mkdirSync, readdirSync, rmSync } from 'node:fs';
 import { join, resolve } from 'node:path';
+import { takeScreens } from './screens.ts';
 
 const root = resolve(import.meta.dirname, '../..');
 const out = join(root, 'resources/demo/out');
@@ -16,4 +17,5 @@ run(process.execPath, ['out/main/command.js', 'run', 'resources/demo/plan.json',
 rmSync(pictures, { recursive: true, force: true });
 mkdirSync(pictures, { recursive: true });
 run('pdftoppm', ['-r', '72', '-png', join(out, 'report.pdf'), join(pictures, 'report')]);
+await takeScreens();
 console.log(`${readdirSync(pictures).length} pictures in resources/pictures`);

@@ -153,7 +153,7 @@ describe('save as', () => {
     expect(codeOf(await checkProject(target, faithful))).toBe('ok');
     const db = new Database(target, { readonly: true });
     expect([db.pragma('page_size', { simple: true }), db.pragma('user_version', { simple: true })]).toEqual([
-      65536, 10,
+      65536, 20,
     ]);
     db.close();
     expect(readdirSync(join(target, '..'))).toEqual(["it's a copy.steelyard"]);

@@ -77,7 +77,7 @@ describe('what is no project is refused by what it is, and left as it was', () =
     const before = readFileSync(file);
     expect(openProject(file)).toEqual({
       ok: false,
-      problems: [{ code: 'project-newer', at: null, facts: { file, found: 90, known: 10 } }],
+      problems: [{ code: 'project-newer', at: null, facts: { file, found: 90, known: 20 } }],
     });
     expect(readFileSync(file).equals(before)).toBe(true);
   });
@@ -136,7 +136,7 @@ describe('the frozen file of layout 10', () => {
 });
 
 describe('a file of an older layout', () => {
-  const more = { layout: 20, sql: 'CREATE TABLE extra (a TEXT) STRICT; INSERT INTO extra SELECT name FROM plan;' };
+  const more = { layout: 30, sql: 'CREATE TABLE extra (a TEXT) STRICT; INSERT INTO extra SELECT name FROM plan;' };
   const layoutIn = (file: string) => {
     const db = new Database(file, { readonly: true });
     const layout = db.pragma('user_version', { simple: true });
@@ -151,12 +151,14 @@ describe('a file of an older layout', () => {
     expect(codeOf(project.verifyTrail())).toBe('ok');
     project.close();
     expect([layoutIn(file), readdirSync(join(file, '..')).sort()]).toEqual([
-      20,
+      30,
       ['old.layout-10.steelyard', 'old.steelyard'],
     ]);
-    const copy = taken(openProject(join(file, '../old.layout-10.steelyard')));
-    expect(copy.trail()).toHaveLength(10);
-    copy.close();
+    const copy = join(file, '../old.layout-10.steelyard');
+    expect(layoutIn(copy)).toBe(10);
+    const older = taken(openProject(copy, { readonly: true, steps: steps.slice(0, 1) }));
+    expect(older.trail()).toHaveLength(10);
+    older.close();
     expect(codeOf(openProject(file))).toBe('project-newer');
     taken(openProject(file, { steps: [...steps, more] })).close();
     expect(readdirSync(join(file, '..'))).toHaveLength(2);
@@ -164,9 +166,9 @@ describe('a file of an older layout', () => {
 
   it('stays at its last whole step where a later one fails', () => {
     const file = frozenCopy();
-    const failing = { layout: 30, sql: 'CREATE TABLE half (a TEXT) STRICT; INSERT INTO nowhere VALUES (1);' };
+    const failing = { layout: 40, sql: 'CREATE TABLE half (a TEXT) STRICT; INSERT INTO nowhere VALUES (1);' };
     expect(() => openProject(file, { steps: [...steps, more, failing] })).toThrow('nowhere');
-    expect(layoutIn(file)).toBe(20);
+    expect(layoutIn(file)).toBe(30);
     const db = new Database(file, { readonly: true });
     expect(db.prepare("SELECT count(*) AS half FROM sqlite_schema WHERE name = 'half'").get()).toEqual({ half: 0 });
     db.close();

@@ -11,7 +11,7 @@ describe('a new project', () => {
     const db = new Database(file, { readonly: true });
     const setting = (name: string) => db.pragma(name, { simple: true });
     expect(setting('application_id')).toBe(0x53544c59);
-    expect(setting('user_version')).toBe(10);
+    expect(setting('user_version')).toBe(20);
     expect(setting('page_size')).toBe(65536);
     expect(setting('journal_mode')).toBe('delete');
     const lax = db.prepare(

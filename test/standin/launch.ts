@@ -1,44 +1,54 @@
-// One launcher, two back ends: real Electron when its binary is there, else the stand-in on Chromium.
-import { type ChildProcess, fork } from 'node:child_process';
-import { existsSync, mkdirSync, mkdtempSync, readFileSync } from 'node:fs';
+// Starts the built program for a test: in Electron where its binary is, else in the stand-in on Chromium. One shape for both.
+import { fork } from 'node:child_process';
+import { existsSync, mkdirSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { _electron, type Browser, type BrowserContext, chromium, type Frame, type Page } from 'playwright-core';
+import { _electron, type Browser, type BrowserContext, chromium, type Page } from 'playwright-core';
+import { type Line, openLine } from './line.ts';
+import { Addresses, chooseFile, copyBy, type Hosted, hostPage } from './pages.ts';
 
 type ElectronModule = typeof import('electron');
-interface Recorded {
-  name: string;
-  args: unknown[];
-}
+
 export interface AppHandle {
   readonly kind: 'electron' | 'standin';
-  firstWindow(): Promise<Page>;
-  evaluate<R, A>(fn: (electron: ElectronModule, arg: A) => R | Promise<R>, arg: A): Promise<R>;
-  /** What the stand-in recorded; empty under real Electron. */
-  readonly records: readonly Recorded[];
-  close(): Promise<void>;
-}
-export interface LaunchOptions {
-  main?: string;
-  userData?: string;
-  headed?: boolean;
-  executablePath?: string;
-  env?: Record<string, string>;
+  readonly firstWindow: () => Promise<Page>;
+  readonly evaluate: <R, A>(work: (electron: ElectronModule, word: A) => R | Promise<R>, word: A) => Promise<R>;
+  /** What the program did that a page cannot show; empty under Electron. */
+  readonly records: readonly { readonly name: string; readonly args: readonly unknown[] }[];
+  /** Folder of the program's own small files. */
+  readonly profile: string;
+  /** Its status, once the program has ended. */
+  readonly ended: Promise<number | null>;
+  readonly close: () => Promise<void>;
 }
 
-// biome-ignore lint/suspicious/noExplicitAny: messages of our own child process
-type Wire = Record<string, any> & { id: number };
+interface LaunchOptions {
+  readonly main?: string;
+  /** The profile of an earlier launch; a fresh one is made, and removed at the end, where none is given. */
+  readonly profile?: string;
+  /** Words of the command line, such as a project to open. */
+  readonly words?: readonly string[];
+  readonly env?: Readonly<Record<string, string>>;
+  /** An installed browser, to open a window that can be seen. */
+  readonly windowIn?: string;
+  /** A command that the program's process is started under, such as a tracer; stand-in only. */
+  readonly under?: readonly string[];
+}
 
-const here = (p: string) => fileURLToPath(new URL(p, import.meta.url));
+/** How long a program that was told to quit may take. */
+const PATIENCE = 15_000;
 
-/** Never `import('electron')` to find out: under Node that starts a download. */
-export function electronBinary(root = process.cwd()): string | undefined {
-  const dir = join(root, 'node_modules/electron');
-  const at = join(dir, 'path.txt');
-  if (!existsSync(at)) return undefined;
-  const exe = join(process.env['ELECTRON_OVERRIDE_DIST_PATH'] ?? join(dir, 'dist'), readFileSync(at, 'utf8').trim());
-  return existsSync(exe) ? exe : undefined;
+/** Where Electron's binary lies, if it does. `import('electron')` would not tell: under Node it begins a download. */
+export function electronBinary(root = process.cwd()): string | null {
+  const folder = join(root, 'node_modules/electron');
+  const note = join(folder, 'path.txt');
+  if (!existsSync(note)) return null;
+  const binary = join(
+    process.env['ELECTRON_OVERRIDE_DIST_PATH'] ?? join(folder, 'dist'),
+    readFileSync(note, 'utf8').trim(),
+  );
+  return existsSync(binary) ? binary : null;
 }
 
 /** The headless browser of the tests: the one named in STEELYARD_CHROMIUM, or the packed one, unpacked under its version. */
@@ -61,255 +71,213 @@ export async function findChromium(): Promise<string> {
   }
 }
 
-export async function launchApp(o: LaunchOptions = {}): Promise<AppHandle> {
-  const main = resolve(o.main ?? 'out/main/main.js');
-  const userData = o.userData ?? mkdtempSync(join(tmpdir(), 'steelyard-'));
-  const env = { ...process.env, STEELYARD_PROFILE: userData, ...o.env } as Record<string, string>;
-  const exe = process.env['STEELYARD_STANDIN'] === '1' ? undefined : electronBinary();
-  if (exe) {
-    const real = await _electron.launch({ executablePath: exe, args: [main], env });
-    return {
-      kind: 'electron',
-      records: [],
-      firstWindow: () => real.firstWindow(),
-      evaluate: (fn, arg) => real.evaluate(fn as never, arg) as never,
-      close: () => real.close(),
-    };
-  }
-  return standin(main, env, o);
+export async function launchApp(options: LaunchOptions = {}): Promise<AppHandle> {
+  const main = resolve(options.main ?? 'out/main/main.js');
+  const profile = options.profile ?? mkdtempSync(join(tmpdir(), 'steelyard-'));
+  const start = {
+    ...options,
+    main,
+    profile,
+    env: { ...process.env, STEELYARD_PROFILE: profile, ...options.env } as Record<string, string>,
+    tidy: () => {
+      if (options.profile === undefined) rmSync(profile, { recursive: true, force: true, maxRetries: 3 });
+    },
+  };
+  const binary = process.env['STEELYARD_STANDIN'] === '1' || options.windowIn ? null : electronBinary();
+  return binary === null ? launchStandin(start) : launchElectron(binary, start);
 }
 
-const toPage = (url: string, schemes: Set<string>) => {
-  const u = new URL(url);
-  return schemes.has(u.protocol.slice(0, -1))
-    ? `https://${u.host}.${u.protocol.slice(0, -1)}.invalid${u.pathname}${u.search}${u.hash}`
-    : url;
-};
-const toApp = (url: string) => url.replace(/^https:\/\/([^/]+)\.([a-z][a-z0-9+.-]*)\.invalid/, '$2://$1');
+interface Start extends LaunchOptions {
+  readonly main: string;
+  readonly profile: string;
+  readonly env: Readonly<Record<string, string>>;
+  readonly tidy: () => void;
+}
 
-async function standin(main: string, env: Record<string, string>, o: LaunchOptions): Promise<AppHandle> {
-  const child: ChildProcess = fork(here('./boot.ts'), [main], {
-    env: { ...env, STANDIN_HEADED: o.headed ? '1' : '0' },
-    serialization: 'advanced',
-    stdio: ['ignore', 'inherit', 'inherit', 'ipc'],
+async function launchElectron(binary: string, start: Start): Promise<AppHandle> {
+  const app = await _electron.launch({
+    executablePath: binary,
+    args: [start.main, ...(start.words ?? [])],
+    env: start.env,
   });
-  const gone = new Promise<number | null>((ok) => child.once('exit', ok));
-  const executablePath = o.executablePath ?? (await findChromium());
-  const schemes = new Set<string>();
-  const records: Recorded[] = [];
-  const pages = new Map<number, Page>();
-  const waiting = new Map<number, { ok(v: unknown): void; fail(e: Error): void }>();
-  const firsts: ((p: Page) => void)[] = [];
-  let seq = 0;
-  let first: Page | undefined;
-  let browser: Browser | undefined;
-  let context: BrowserContext;
-  const tell = (m: object) => void (child.connected && child.send(m));
-  const ask = <T>(m: object) =>
-    new Promise<T>((ok, fail) => {
-      waiting.set(++seq, { ok: ok as (v: unknown) => void, fail });
-      tell({ ...m, seq });
-    });
+  const { promise: ended, resolve: end } = Promise.withResolvers<number | null>();
+  app.process().once('exit', end);
+  return {
+    kind: 'electron',
+    records: [],
+    profile: start.profile,
+    ended,
+    firstWindow: () => app.firstWindow(),
+    evaluate: (work, word) => app.evaluate(work as never, word) as never,
+    close: async () => {
+      await app.close();
+      start.tidy();
+    },
+  };
+}
 
-  const args = ['--disable-features=Translate,MediaRouter', '--no-first-run'];
-  if (o.headed) {
-    // launched below, in app mode, by the first window
-  } else {
-    browser = await chromium.launch({ executablePath, args, chromiumSandbox: false });
-  }
-  const wire = async (ctx: BrowserContext, page: Page, id: number) => {
-    ctx.on('page', (p) => void (p !== page && p.close()));
-    await ctx.route('**/*', async (route) => {
-      const req = route.request();
-      const url = toApp(req.url());
-      const scheme = new URL(url).protocol.slice(0, -1);
-      if (req.isNavigationRequest()) {
-        let frame: Frame | undefined;
-        try {
-          frame = req.frame();
-        } catch {
-          // a popup's first request comes before its frame: target=_blank, window.open
-        }
-        if (!frame || frame.page() !== page) {
-          tell({ t: 'window-open', id, url }); // setWindowOpenHandler decides; 'allow' is not implemented
-          return route.abort('aborted'); // any other code commits Chromium's error page
-        }
-        if (
-          frame.parentFrame() === null &&
-          expected.get(id) !== req.url() &&
-          (await ask<boolean>({ t: 'will-navigate', id, url }))
-        )
-          return route.abort('aborted');
-      }
-      if (await ask<boolean>({ t: 'request', url, resourceType: req.resourceType() }))
-        return route.abort('blockedbyclient');
-      if (!schemes.has(scheme)) return route.continue();
-      const r = await ask<{ status: number; headers: Record<string, string>; body: Uint8Array }>({
-        t: 'fetch',
-        url,
-        method: req.method(),
-        headers: req.headers(),
-      });
-      return route.fulfill({ status: r.status, headers: r.headers, body: Buffer.from(r.body) });
-    });
-  };
-  const open = async (
-    id: number,
-    options: { width?: number; height?: number; webPreferences?: Record<string, unknown> },
-  ) => {
-    let page: Page;
-    if (o.headed) {
-      context = await chromium.launchPersistentContext(join(env['STEELYARD_PROFILE'] ?? tmpdir(), 'chromium'), {
-        executablePath,
-        headless: false,
-        chromiumSandbox: process.getuid?.() !== 0,
-        viewport: null,
-        ignoreDefaultArgs: ['--enable-automation'],
-        args: [
-          ...args,
-          '--app=data:text/html,<title>starting</title>',
-          `--window-size=${options.width ?? 800},${options.height ?? 600}`,
-          '--window-position=0,0',
-          '--test-type',
-        ],
-      });
-      page = context.pages()[0] ?? (await context.waitForEvent('page'));
-    } else {
-      context = await (browser as Browser).newContext({
-        viewport: { width: options.width ?? 800, height: options.height ?? 600 },
-      });
-      page = await context.newPage();
-    }
-    pages.set(id, page);
-    await wire(context, page, id);
-    await page.exposeBinding('__standin', async ({ frame }, m: { t: string; channel: string; args: unknown[] }) => {
-      const url = toApp(frame.url());
-      if (m.t === 'message') return tell({ ...m, id, url });
-      return ask({ ...m, id, url }).then(
-        (value) => ({ value }),
-        (e: Error) => ({ error: e.message }),
-      );
-    });
-    const preload = options.webPreferences?.['preload'];
-    if (typeof preload === 'string') {
-      await page.addInitScript(
-        `(() => {${readFileSync(here('./preload-host.js'), 'utf8')}\npreloadHost(${JSON.stringify(readFileSync(preload, 'utf8'))});})()`,
-      );
-    }
-    page.on('close', () => pages.delete(id) && tell({ t: 'user-close', id }));
-    page.once('domcontentloaded', () => tell({ t: 'win-event', id, name: 'ready-to-show' }));
-    page.on('load', () => tell({ t: 'wc-event', id, name: 'did-finish-load' }));
-    return page;
-  };
-  const expected = new Map<number, string>();
-  const opening = new Map<number, Promise<Page>>();
-  const on: Record<string, (m: Wire) => Promise<unknown> | unknown> = {
-    new: (m) => void opening.set(m.id, open(m.id, m['options'] as never)),
-    load: async (m) => {
-      const page = await opening.get(m.id);
-      expected.set(m.id, new URL(toPage(m['url'], schemes)).href);
-      await page?.goto(toPage(m['url'], schemes));
-      if (page && !first) {
-        first = page;
-        for (const f of firsts) f(page);
-      }
+function launchStandin(start: Start): AppHandle {
+  const child = forkProgram(start);
+  const records: { name: string; args: readonly unknown[] }[] = [];
+  const browser = new Windows(start);
+  const first = Promise.withResolvers<Page>();
+  first.promise.catch(() => {}); // heard by firstWindow, if anyone asks
+  const line = openLine(child, {
+    loaded: () => line.tell('ready'),
+    record: (name: string, args: readonly unknown[]) => void records.push({ name, args }),
+    scheme: browser.addresses.add,
+    open: (id: number, options: WindowOptions) => browser.open(id, options, line).catch(first.reject),
+    load: async (id: number, address: string) => {
+      const { page, load } = await browser.of(id);
+      await load(address);
+      first.resolve(page);
     },
-    send: (m) =>
-      pages
-        .get(m.id)
-        ?.evaluate((x) => (globalThis as unknown as { __standinDeliver(x: unknown): void }).__standinDeliver(x), {
-          channel: m['channel'],
-          args: m['args'],
-        } as unknown),
-    pdf: async (m) => {
-      const p = m['opts'] as {
-        pageSize?: string;
-        landscape?: boolean;
-        printBackground?: boolean;
-        displayHeaderFooter?: boolean;
-        headerTemplate?: string;
-        footerTemplate?: string;
-        generateTaggedPDF?: boolean;
-      };
-      return new Uint8Array(
-        (await pages.get(m.id)?.pdf({
-          format: p.pageSize ?? 'Letter',
-          landscape: p.landscape ?? false,
-          printBackground: p.printBackground ?? false,
-          displayHeaderFooter: p.displayHeaderFooter ?? false,
-          headerTemplate: p.headerTemplate ?? '',
-          footerTemplate: p.footerTemplate ?? '',
-          tagged: p.generateTaggedPDF ?? false,
-        })) ?? [],
-      );
+    send: async (id: number, channel: string, words: readonly unknown[]) =>
+      browser.has(id) && (await browser.of(id)).send(channel, words),
+    reload: (id: number) => browser.has(id) && browser.of(id).then(({ reload }) => reload().catch(() => {})), // it may close meanwhile
+    title: (id: number, title: string) => browser.entitle(id, title),
+    theme: (source: Theme) => browser.colour(source),
+    choose: async (id: number, endings: readonly string[]) => chooseFile((await browser.of(id)).page, endings),
+    copy: async (id: number, kinds: Readonly<Record<string, string>>) => {
+      const { page } = await browser.of(id);
+      await copyBy(page.context(), page, kinds);
     },
-    choose: async (m) => {
-      const page = pages.get(m.id);
-      if (!page) return [];
-      const cdp = await page.context().newCDPSession(page);
-      const filters = (m['options']?.filters ?? []) as { extensions: string[] }[];
-      const accept = filters.flatMap((f) => f.extensions.map((e) => `.${e}`)).join(',');
-      const { result } = await cdp.send('Runtime.evaluate', {
-        userGesture: true,
-        awaitPromise: true,
-        expression: `new Promise((ok) => {
-          const i = Object.assign(document.createElement('input'), { type: 'file', accept: ${JSON.stringify(accept)} });
-          i.addEventListener('change', () => ok(i.files[0] ?? null));
-          i.addEventListener('cancel', () => ok(null));
-          i.click();
-        })`,
-      });
-      if (!result.objectId) return [];
-      const { path } = (await cdp.send(
-        'DOM.getFileInfo' as never,
-        { objectId: result.objectId } as never,
-      )) as unknown as { path: string };
-      await cdp.detach();
-      return [path];
-    },
-    shot: async (m) => new Uint8Array((await pages.get(m.id)?.screenshot()) ?? []),
-    js: (m) => pages.get(m.id)?.evaluate(m['code'] as string),
-    close: (m) => {
-      const p = pages.get(m.id);
-      pages.delete(m.id);
-      return p?.close();
-    },
-    record: (m) => void records.push({ name: m['name'], args: m['args'] }),
-    scheme: (m) => void schemes.add(m['scheme']),
-    quit: () => undefined,
-  };
-  child.on('message', (raw) => {
-    const m = raw as Wire & { t: string; seq?: number };
-    if (m.t === 'loaded') return tell({ t: 'ready' }); // as Electron does: no 'ready' before the entry module has been evaluated
-    if (m.t === 'reply') {
-      const w = waiting.get(m.seq as number);
-      waiting.delete(m.seq as number);
-      if (m['error'] === undefined) w?.ok(m['value']);
-      else w?.fail(new Error(m['error']));
-      return;
-    }
-    Promise.resolve(on[m.t]?.(m)).then(
-      (value) => m.seq && m.t !== 'new' && tell({ t: 'reply', seq: m.seq, value }),
-      (e: Error) => (m.seq ? tell({ t: 'reply', seq: m.seq, error: e.message }) : console.error('stand-in', m.t, e)),
-    );
+    close: (id: number) => browser.close(id),
+  });
+  const { promise: ended, resolve: end } = Promise.withResolvers<number | null>();
+  child.once('exit', (status) => {
+    const reason = `the program ended with status ${status}`;
+    end(status);
+    first.reject(new Error(reason));
+    line.hangUp(reason);
   });
   return {
     kind: 'standin',
     records,
-    firstWindow: () =>
-      first
-        ? Promise.resolve(first)
-        : Promise.race([
-            new Promise<Page>((ok) => void firsts.push(ok)),
-            gone.then((c): never => {
-              throw new Error(`app exited ${c} before its first window`);
-            }),
-          ]),
-    evaluate: (fn, arg) => ask({ t: 'eval', fn: fn.toString(), arg }),
-    async close() {
-      tell({ t: 'eval', seq: ++seq, fn: '({ app }) => app.quit()' });
-      await gone;
-      await (browser ? browser.close() : context?.close());
+    profile: start.profile,
+    ended,
+    firstWindow: () => first.promise,
+    evaluate: (work, word) => line.call('evaluate', work.toString(), word),
+    close: async () => {
+      line.tell('quit');
+      const late = setTimeout(() => child.kill('SIGKILL'), PATIENCE);
+      await ended;
+      clearTimeout(late);
+      await browser.end();
+      start.tidy();
     },
   };
+}
+
+function forkProgram({ main, words = [], env, windowIn, under }: Start) {
+  const [tracer, ...its] = under ?? [];
+  return fork(fileURLToPath(new URL('./boot.ts', import.meta.url)), [main, ...words], {
+    env: { ...env, STANDIN_HEADED: windowIn === undefined ? '0' : '1' },
+    serialization: 'advanced',
+    stdio: ['ignore', 'inherit', 'inherit', 'ipc'],
+    ...(tracer === undefined ? { execArgv: [] } : { execPath: tracer, execArgv: [...its, process.execPath] }),
+  });
+}
+
+type Theme = 'system' | 'light' | 'dark';
+
+interface WindowOptions {
+  readonly width: number;
+  readonly height: number;
+  readonly preload: string | null;
+  readonly switches: readonly string[];
+  readonly scheme: Theme;
+}
+
+/** The Chromium behind a program, headless or an installed one with its window to be seen, and the pages in it. */
+class Windows {
+  readonly addresses = new Addresses();
+  readonly #start: Start;
+  readonly #open = new Map<number, Promise<Hosted>>();
+  readonly #titles = new Map<number, string>();
+  #browser: Promise<Browser> | null = null;
+  #context: BrowserContext | null = null;
+  constructor(start: Start) {
+    this.#start = start;
+  }
+
+  /** A page that its user has closed is gone before its window is. */
+  has(id: number): boolean {
+    return this.#open.has(id);
+  }
+
+  of(id: number): Promise<Hosted> {
+    return this.#open.get(id) ?? Promise.reject(new Error(`no window ${id}`));
+  }
+
+  async open(id: number, options: WindowOptions, line: Line): Promise<void> {
+    const hosted = this.#page(options).then(async (page) => {
+      page.once('close', () => this.#open.delete(id) && line.tell('close-by-user', id));
+      page.once('crash', () => line.tell('contents', id, 'render-process-gone', { reason: 'crashed' }));
+      return hostPage({ id, page, line, addresses: this.addresses, preload: options.preload });
+    });
+    this.#open.set(id, hosted);
+    await hosted;
+  }
+
+  async #page({ width, height, switches, scheme }: WindowOptions): Promise<Page> {
+    const args = ['--disable-features=Translate,MediaRouter', '--no-first-run', ...switches];
+    if (this.#start.windowIn !== undefined) return this.#visiblePage(this.#start.windowIn, args, { width, height });
+    this.#browser ??= findChromium().then((executablePath) =>
+      chromium.launch({ executablePath, args, chromiumSandbox: false }),
+    );
+    const context = await (await this.#browser).newContext({
+      viewport: { width, height },
+      colorScheme: scheme === 'dark' ? 'dark' : 'light',
+      serviceWorkers: 'block',
+    });
+    return context.newPage();
+  }
+
+  async #visiblePage(executablePath: string, args: string[], size: { width: number; height: number }): Promise<Page> {
+    this.#context = await chromium.launchPersistentContext(join(this.#start.profile, 'browser'), {
+      executablePath,
+      headless: false,
+      chromiumSandbox: process.getuid?.() !== 0,
+      viewport: null,
+      colorScheme: null,
+      ignoreDefaultArgs: ['--enable-automation'],
+      args: [
+        ...args,
+        '--app=data:text/html,<title>Steelyard</title>',
+        `--window-size=${size.width},${size.height}`,
+        '--test-type',
+      ],
+    });
+    return this.#context.pages()[0] ?? this.#context.waitForEvent('page');
+  }
+
+  /** Only a window that can be seen has a frame for its title: an installed browser takes it from the page, whichever stands there. */
+  async entitle(id: number, title: string): Promise<void> {
+    if (this.#start.windowIn === undefined || !this.has(id)) return;
+    const { page } = await this.of(id);
+    const isFirst = !this.#titles.has(id);
+    this.#titles.set(id, title);
+    const entitle = () =>
+      page.evaluate((text) => void (document.title = text), this.#titles.get(id) ?? '').catch(() => {}); // on its way elsewhere
+    if (isFirst) page.on('domcontentloaded', entitle);
+    await entitle();
+  }
+
+  async colour(source: Theme): Promise<void> {
+    const isVisible = this.#start.windowIn !== undefined;
+    const colorScheme = source === 'system' ? (isVisible ? null : 'light') : source;
+    for (const hosted of this.#open.values()) await (await hosted).page.emulateMedia({ colorScheme });
+  }
+
+  async close(id: number): Promise<void> {
+    const hosted = this.#open.get(id);
+    this.#open.delete(id);
+    await (await hosted)?.page.close();
+  }
+
+  async end(): Promise<void> {
+    await this.#context?.close().catch(() => {}); // its user may have closed it
+    await (await this.#browser)?.close();
+  }
 }

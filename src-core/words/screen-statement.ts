@@ -1,0 +1,113 @@
+import type { DraftPlan } from '../protocol/draft';
+import { isSampling } from '../protocol/parameter-names';
+import type { Part, Plan, Variance } from '../protocol/plan';
+import type { Result } from '../protocol/result';
+import { outcomeNoun, varianceSentence } from './statement';
+
+/** A piece of the statement. governs: which choices it opens; null for the words between. */
+export interface StatementPiece {
+  readonly text: string;
+  readonly governs: 'sampling' | 'beyond' | 'together' | null;
+}
+
+/** The variance structure as one sentence, cut where a phrase can be changed. result: a fit of this very plan, or null where there is none yet. */
+export function statementPieces(plan: Plan | DraftPlan, result: Result | null): readonly StatementPiece[] {
+  const { variance } = plan;
+  if (variance === null) return [{ text: unstatedText(plan), governs: null }];
+  const whole = { ...plan, variance } as Plan;
+  const sentence = result === null ? unfittedSentence(whole) : varianceSentence({ ...result, plan: whole });
+  const start = `The error variance of each ${outcomeNoun(whole)} is `;
+  const [sampling = '', ...beyond] = sentence.slice(start.length).replace(/\.$/, '').split(', plus ');
+  return [
+    { text: start, governs: null },
+    { text: sampling, governs: 'sampling' },
+    ...beyond.flatMap((text): StatementPiece[] => [
+      { text: ', plus ', governs: null },
+      { text, governs: 'beyond' },
+    ]),
+    ...(beyond.length === 0
+      ? ([
+          { text: ', and ', governs: null },
+          { text: 'nothing beyond it', governs: 'beyond' },
+        ] as const)
+      : []),
+    { text: '. Cells are taken as ', governs: null },
+    { text: togetherText(variance), governs: 'together' },
+    { text: '.', governs: null },
+  ];
+}
+
+function unstatedText(plan: Plan | DraftPlan): string {
+  const { count, outcome } = plan.roles;
+  if (outcome === null && count === null) return 'Nothing is stated yet: no data, no outcome, no variance.';
+  return `How the error variance of each ${outcomeNoun(plan as Plan)} arises is not stated yet; nothing is fitted before it is.`;
+}
+
+function togetherText({ parts }: Variance): string {
+  const shared = parts.filter((part) => part.kind === 'shared').map((part) => part.by.join(' and '));
+  const correlated = parts.some((part) => 'correlation' in part && part.correlation !== null);
+  if (shared.length > 0) return `sharing what ${shared.join(', ')} have in common`;
+  return correlated || parts.some((part) => part.kind === 'matrix') ? 'correlated' : 'independent of one another';
+}
+
+function unfittedSentence(plan: Plan): string {
+  const { parts } = plan.variance;
+  const start = `The error variance of each ${outcomeNoun(plan)} is `;
+  const sampling = parts.filter(isSampling).map((part) => unfittedPhrase(part, plan));
+  const others = parts
+    .filter((part) => !isSampling(part))
+    .map((part) =>
+      part.kind === 'shared'
+        ? `ω², shared by all cells of the same ${part.by.join(' and ')}`
+        : 'τ² for what sets cells apart beyond sampling, the same for every cell',
+    );
+  return `${[`${start}${sampling.join(' and ')}`, ...others].join(', plus ')}.`;
+}
+
+function unfittedPhrase(part: Part, { roles }: Plan): string {
+  const size = roles.designEffect === null ? 'the number of respondents behind it' : 'the effective size behind it';
+  switch (part.kind) {
+    case 'constant':
+      return 'φ, the same for every cell';
+    case 'per-size':
+      return `φ divided by ${size}`;
+    case 'given': {
+      const given = roles.errorKind === 'variance' ? 'its supplied error variance' : 'the square of its supplied error';
+      return part.scale === 'free' ? `${given}, times a factor of φ` : given;
+    }
+    case 'size-power':
+      return `φ divided by ${size} to the power ${part.exponent === 'estimate' ? 'δ' : part.exponent}`;
+    case 'proxy':
+      return `φ times ${part.column} to the power ${part.exponent === 'estimate' ? 'δ' : part.exponent}`;
+    default:
+      return `that of its “${part.kind}” part`;
+  }
+}
+
+/** Titles of the choices, and what each choice means. */
+export const statementTexts = {
+  sampling: 'How the sampling error arises',
+  beyond: 'What sets cells apart beyond sampling',
+  together: 'Whether cells move together',
+  more: 'All parts, and why one would choose them, are under Variance.',
+  noSize: 'No column is named as the size.',
+  noError: 'No column is named as the error.',
+  constantBarred: 'The sampling error is the same for every cell already: the two could not be told apart.',
+  constant: { text: 'the same for every cell', says: 'Weights are equal, whatever the sizes.' },
+  perSize: { text: 'falls with size', says: 'φ over the size: weights are proportional to the sizes.' },
+  givenFixed: {
+    text: 'as supplied, known',
+    says: 'The supplied errors as they stand; nothing of their scale is estimated.',
+  },
+  givenFree: {
+    text: 'as supplied, up to a factor',
+    says: 'The supplied errors times a factor φ that these data settle.',
+  },
+  sizePower: { text: 'falls with a power of size', says: 'φ over the size to the power δ, which these data settle.' },
+  between: {
+    text: 'a variance between cells',
+    says: 'τ², the same for every cell: more respondents do not make it smaller.',
+  },
+  noBetween: { text: 'nothing', says: 'All that sets cells apart is in the terms and in sampling.' },
+  independent: { text: 'independent of one another', says: 'What one cell’s error is says nothing of another’s.' },
+} as const;

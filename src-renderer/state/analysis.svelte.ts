@@ -1,0 +1,62 @@
+import type { AlsoChanged, Edited } from '@core/protocol/edit-structure';
+import type { Plan } from '@core/protocol/plan';
+import type { Coefficient, Result } from '@core/protocol/result';
+import { headlineTerm } from '@core/words/headline';
+import { session } from './session.svelte';
+
+/** What the screens of the analysis share: the coefficient in view, whether the answer is covered, what the last change took along. */
+class Analysis {
+  #asked = $state<string | null>(null);
+  /** What the last change changed besides what was asked for. */
+  also = $state.raw<readonly AlsoChanged[]>([]);
+  /** Columns of the plan's tables, derived ones included; asked for when a term is to be added. */
+  columns = $state.raw<readonly string[]>([]);
+  #columnsOf: string | null = null;
+
+  /** The plan looked at, once its structure is stated. */
+  readonly plan: Plan | null = $derived(
+    session.plan !== null && session.plan.variance !== null && session.plan.estimate !== null
+      ? (session.plan as Plan)
+      : null,
+  );
+  readonly covered: boolean = $derived(session.project?.covered ?? false);
+  /** The coefficient that prices, beam, scan and influence are told for. */
+  readonly term: string | null = $derived(termInView(session.result, this.#asked));
+  readonly own: Coefficient | null = $derived(
+    session.result?.fit.coefficients.find(({ term }) => term === this.term) ?? null,
+  );
+  /** The figures on the screen are of a plan before the one that stands. */
+  readonly stale: boolean = $derived(
+    this.plan !== null && session.result !== null && JSON.stringify(session.result.plan) !== JSON.stringify(this.plan),
+  );
+
+  look(term: string): void {
+    this.#asked = term;
+  }
+
+  /** Sends a changed plan on its way, and keeps what else it changed for the line that says so. */
+  async change(edited: Edited | Plan, { action, at }: { action: string; at: string }): Promise<boolean> {
+    const { plan, also } = 'plan' in edited ? edited : { plan: edited, also: [] };
+    this.also = also;
+    return session.change(plan, { action, at });
+  }
+
+  /** Learns the columns at hand; they are known already while the data stand as they stood. */
+  async learnColumns(): Promise<void> {
+    const plan = session.plan;
+    if (plan === null) return;
+    const of = JSON.stringify([plan.data, session.inputs]);
+    if (of === this.#columnsOf) return;
+    const look = await session.ask('data.look', { plan, inputs: [...session.inputs] });
+    if (look === null) return;
+    this.columns = look.columns;
+    this.#columnsOf = of;
+  }
+}
+
+function termInView(result: Result | null, asked: string | null): string | null {
+  if (result === null) return null;
+  return result.fit.coefficients.some(({ term }) => term === asked) ? asked : headlineTerm(result);
+}
+
+export const analysis = new Analysis();
