@@ -26,6 +26,7 @@ const importers = [
   ['papaparse', '^src-main/intake/'],
   ['(pdfkit|svg-to-pdfkit)', '^src-main/print/'],
   ['echarts', '^(src-renderer/charts/|src-main/print/)'],
+  ['pdfjs-dist', '^src-renderer/screens/report/'],
 ].map(([packageName, importer]) => ({
   name: `one-importer-of-${packageName
     .replace(/[^a-z0-9-]+/g, ' ')

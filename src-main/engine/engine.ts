@@ -6,7 +6,7 @@ import type { EngineAnswers, EngineAsks, EngineKind, FromEngine, ToEngine } from
 import type { ShelfName } from './shelf';
 
 /** How long a question may take to notice that it was cancelled before its thread is ended, in milliseconds. */
-const PATIENCE = 300;
+const PATIENCE = 3000;
 
 /** What one thread may take of memory: a table that needs more is refused, and the program goes on. */
 const MEMORY = { maxOldGenerationSizeMb: 3072 };
@@ -137,13 +137,30 @@ export function openEngine({
     close: async () => {
       closed = true;
       for (const asked of waiting.splice(0)) asked.answer(refuse('cancelled', {}));
-      active?.answer(refuse('cancelled', {}));
-      active = null;
       const own = worker;
+      const left = active;
       worker = null;
+      active = null;
+      left?.answer(refuse('cancelled', {}));
+      // A thread is ended at rest where that can be had: it is told to stop, and given its time.
+      if (own && left) await stopped(own, left.flag);
       await own?.terminate();
     },
   };
+}
+
+/** Waits until a thread that was told to stop answers what it was at, but no longer than its patience. */
+function stopped(own: Worker, flag: SharedArrayBuffer): Promise<void> {
+  Atomics.store(new Int32Array(flag), 0, 1);
+  return new Promise((ended) => {
+    const patience = setTimeout(ended, PATIENCE);
+    const heard = () => {
+      clearTimeout(patience);
+      ended();
+    };
+    own.on('message', (told: FromEngine) => told.kind === 'answer' && heard());
+    own.once('exit', heard);
+  });
 }
 
 function filesIn({ ask }: Asked): readonly ShelfName[] {
