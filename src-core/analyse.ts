@@ -20,7 +20,7 @@ import { intraclassOf } from './inference/intraclass';
 import { likelihoodsOf } from './inference/likelihoods';
 import { questionsOf } from './inference/questions';
 import { robustBeside } from './inference/robust';
-import { done, type Outcome, refuseAll } from './protocol/outcome';
+import { done, type Outcome, refuse, refuseAll } from './protocol/outcome';
 import type { Plan } from './protocol/plan';
 import type { Result } from './protocol/result';
 import type { Hooks } from './protocol/source';
@@ -48,6 +48,11 @@ export function analyse(asked: { readonly plan: Plan; readonly cells: Cells; rea
   return resultOf({ plan, hooks, model: model.value, fitted: fitted.value, rivals: rivals.value });
 }
 
+/** Hooks for a part of the path: its own share of 0 to 1 as a share of the whole. */
+function within(hooks: Hooks, from: number, to: number): Hooks {
+  return { cancelled: hooks.cancelled, progress: (step, share) => hooks.progress(step, from + (to - from) * share) };
+}
+
 function resultOf(fits: {
   readonly plan: Plan;
   readonly model: Model;
@@ -63,9 +68,9 @@ function resultOf(fits: {
   const likelihoods = likelihoodsOf(fitted);
   const { coefficients } = inferred.value;
   hooks.progress('evidence', 0.3);
-  const evidence = structureEvidence({ fitted, cells, plan, design, hooks });
+  const evidence = structureEvidence({ fitted, cells, plan, design, hooks: within(hooks, 0.3, 0.6) });
   hooks.progress('sensitivity', 0.6);
-  const scan = exponentScanOf({ fitted, cells, plan });
+  const scan = exponentScanOf({ fitted, cells, plan, hooks: within(hooks, 0.6, 0.7) });
   const pieces = {
     data: cells.data,
     fit: fitResultOf({
@@ -75,6 +80,7 @@ function resultOf(fits: {
       plan,
       carriedBy: carriedByOf({ fitted, cells }),
       likelihoods,
+      hooks,
     }),
     robustBeside: robustBeside(fitted),
     ...cellResultsOf({ fitted, cells }),
@@ -82,9 +88,13 @@ function resultOf(fits: {
     evidence,
     betweenRules: betweenRulesOf(fitted, level, hooks),
     beam: beamOf({ fitted, labels: cells.labels, judge: judgeOf(cells, plan) }),
-    overturn: overturnOf({ fitted, cells, plan, coefficients, rivals, ends: scan.ends }),
-    selfChecks: selfChecksOf({ fitted, cells, plan, rivals }),
+    overturn: overturnOf({
+      ...{ fitted, cells, plan, coefficients, rivals, ends: scan.ends },
+      hooks: within(hooks, 0.7, 0.8),
+    }),
+    selfChecks: selfChecksOf({ fitted, cells, plan, rivals, hooks: within(hooks, 0.8, 0.9) }),
   };
+  if (hooks.cancelled()) return refuse('cancelled', {});
   hooks.progress('report', 0.9);
   return done({
     format: 'steelyard-result/1',

@@ -1,16 +1,11 @@
-import { solve } from '../algebra/dense';
 import { freeParameters, type Structure } from '../model/structure';
-import { exp } from '../numbers/elementary';
-import { type Height, heightAt, type Likelihood, likelihoodAt, scoreAt } from './likelihood';
-import type { LikelihoodRows } from './likelihood-rows';
+import { ascentStep, type Climb, moved, shareOfSpread } from './ascent-step';
+import { type Height, heightAt, likelihoodAt } from './likelihood';
 
 /** Rounds at most, and how many of them keep to the expected information before the observed one is tried. */
 const ROUNDS = 200;
 const SCORING_ROUNDS = 8;
 const HALVINGS = 40;
-/** Longest step on ln phi or ln tau^2, and on delta. */
-const LONGEST = 2;
-const LONGEST_EXPONENT = 0.5;
 /** The rule of arrival: relative change of every parameter, and the score in units of its own standard deviation. */
 const CHANGE = 1e-10;
 const SCORE = 1e-8;
@@ -22,16 +17,6 @@ const VANISHED = 1e-13;
 export const WIDEST_EXPONENT = 8;
 /** How far a likelihood may seem to fall by rounding alone. */
 const FLAT = 1e-13;
-/** Step of the differences of the score. */
-const DIFFERENCE = 1e-4;
-
-export interface Climb {
-  readonly rows: LikelihoodRows;
-  readonly structure: Structure;
-  readonly restricted: boolean;
-  /** True where the maximum's height is asked for and not its place: the last digits of the place are left out. */
-  readonly heightOnly?: boolean;
-}
 
 /** A point and the likelihood there. */
 export interface Place {
@@ -63,14 +48,11 @@ export function climb(model: Climb, start: Float64Array): Arrival {
     if (gone >= 0) return { ended: 'boundary', parameter: gone, rounds };
     if (!at || Math.abs(theta[model.structure.exponentAt] ?? 0) > WIDEST_EXPONENT)
       return { ended: 'lost', theta, logLikelihood, rounds };
-    const here = at;
-    const score = inSteps(model.structure, theta, here);
-    const within = (share: number) =>
-      free.every((_, a) => Math.abs(score[a] as number) <= share * spreadOf(model.structure, theta, here, a));
-    if (model.heightOnly && within(SCORE_FOR_HEIGHT)) return { ended: 'maximum', theta, logLikelihood, rounds };
-    const step = direction({ model, theta, at: here, newton: rounds > SCORING_ROUNDS });
+    const rise = shareOfSpread(at);
+    if (model.heightOnly && rise <= SCORE_FOR_HEIGHT) return { ended: 'maximum', theta, logLikelihood, rounds };
+    const step = ascentStep({ model, theta, at, newton: rounds > SCORING_ROUNDS });
     const next: Place | null = step && halved({ model, theta, logLikelihood, step });
-    const settled = within(SCORE);
+    const settled = rise <= SCORE;
     if (!next)
       return settled
         ? { ended: 'maximum', theta, logLikelihood, rounds }
@@ -104,73 +86,6 @@ function grown({ scaleAt, betweenAt }: Structure, theta: Float64Array, { scaleRa
   return next;
 }
 
-function isLogged(structure: Structure, i: number): boolean {
-  return structure.parameters[i]?.role !== 'exponent';
-}
-
-/** d(theta / unit)/du of each free parameter, u being ln theta or theta. */
-function stretch(structure: Structure, theta: Float64Array, { units }: Pick<Likelihood, 'units'>): Float64Array {
-  return Float64Array.from(freeParameters(structure), (i, a) =>
-    isLogged(structure, i) ? (theta[i] as number) / (units[a] as number) : 1,
-  );
-}
-
-/** The score by the parameters of the steps. */
-function inSteps(structure: Structure, theta: Float64Array, at: Pick<Likelihood, 'units' | 'score'>): Float64Array {
-  const by = stretch(structure, theta, at);
-  return at.score.map((value, a) => value * (by[a] as number));
-}
-
-function spreadOf(structure: Structure, theta: Float64Array, at: Likelihood, a: number): number {
-  const by = stretch(structure, theta, at)[a] as number;
-  return by * Math.sqrt(Math.max(0, (at.information[a] as Float64Array)[a] as number));
-}
-
-function direction(model: { model: Climb; theta: Float64Array; at: Likelihood; newton: boolean }): Float64Array | null {
-  const { theta, at } = model;
-  const { structure } = model.model;
-  const by = stretch(structure, theta, at);
-  const score = inSteps(structure, theta, at);
-  const expected = at.information.map((row, a) => row.map((value, b) => value * (by[a] as number) * (by[b] as number)));
-  const observed = model.newton ? observedInformation(model.model, theta) : null;
-  const newton = observed && solve(observed, score);
-  const rises = (step: Float64Array) => step.reduce((sum, d, a) => sum + d * (score[a] as number), 0) >= 0;
-  const step =
-    newton && rises(newton)
-      ? newton
-      : (solve(expected, score) ?? score.map((s, a) => s / ((expected[a] as Float64Array)[a] as number)));
-  if (!step.every(Number.isFinite)) return null;
-  const limits = freeParameters(structure).map((i) => longest(structure, i));
-  const over = step.reduce((most, d, a) => Math.max(most, Math.abs(d) / (limits[a] as number)), 1);
-  return step.map((d) => d / over);
-}
-
-/** Beside an exponent phi follows it, by as much as the unit of size asks for: the exponent alone is held back. */
-function longest({ parameters, scaleAt, exponentAt }: Structure, i: number): number {
-  if (i === exponentAt) return LONGEST_EXPONENT;
-  return i === scaleAt && parameters[exponentAt]?.fixed === null ? Infinity : LONGEST;
-}
-
-/** Minus the differences of the score on the scale of the steps; null where a neighbour cannot be computed or it is not positive. */
-function observedInformation(model: Climb, theta: Float64Array): Float64Array[] | null {
-  const free = freeParameters(model.structure);
-  const rows: Float64Array[] = [];
-  for (const [a] of free.entries()) {
-    const unit = free.map((_, b) => (a === b ? DIFFERENCE : 0));
-    const [up, down] = [unit, unit.map((d) => -d)].map((step) => {
-      const place = moved(model.structure, theta, Float64Array.from(step));
-      const there = scoreAt({ ...model, theta: place });
-      return there && inSteps(model.structure, place, there);
-    });
-    if (!up || !down) return null;
-    rows.push(up.map((value, b) => ((down[b] as number) - value) / (2 * DIFFERENCE)));
-  }
-  const even = rows.map((row, a) => row.map((value, b) => (value + ((rows[b] as Float64Array)[a] as number)) / 2));
-  return even.every((row) => row.every(Number.isFinite)) && even.every((row, a) => (row[a] as number) > 0)
-    ? even
-    : null;
-}
-
 function halved(model: { model: Climb; theta: Float64Array; logLikelihood: number; step: Float64Array }): Place | null {
   const { theta, logLikelihood } = model;
   const slack = FLAT * (Math.abs(logLikelihood) + model.model.rows.cells);
@@ -181,15 +96,6 @@ function halved(model: { model: Climb; theta: Float64Array; logLikelihood: numbe
     step = step.map((d) => d / 2);
   }
   return null;
-}
-
-function moved(structure: Structure, theta: Float64Array, step: Float64Array): Float64Array {
-  const place = theta.slice();
-  for (const [a, i] of freeParameters(structure).entries()) {
-    const d = step[a] as number;
-    place[i] = isLogged(structure, i) ? (theta[i] as number) * exp(d) : (theta[i] as number) + d;
-  }
-  return place;
 }
 
 function changed(before: number, after: number): number {

@@ -1,4 +1,6 @@
 import { leastSquares, type Solved } from '../algebra/least-squares';
+import { leveragesOf } from '../algebra/orthonormal';
+import { throughDiagonal } from '../algebra/through-diagonal';
 import type { Design } from '../model/design';
 import type { Structure } from '../model/structure';
 import type { Decimals } from '../numbers/decimals';
@@ -48,7 +50,10 @@ export function fitAt(place: FitPlace): Fitted {
   const scale = structure.commonScale ? (theta[structure.scaleAt] as number) : null;
   const pulls = pullsOf(solved, weighting);
   const covariance = place.weighting
-    ? spreadOf(pulls, shape, scale ?? 1)
+    ? throughDiagonal(
+        pulls,
+        shape.map((v) => v * (scale ?? 1)),
+      )
     : solved.gramInverse.map((row) => row.map((value) => value * (scale ?? 1)));
   const variances = scale === null ? shape : shape.map((v) => v * scale);
   const errors = errorsOf({ covariance, pulls, variances });
@@ -70,7 +75,7 @@ export function fitAt(place: FitPlace): Fitted {
     errors,
     pulls,
     gramInverse: solved.gramInverse,
-    leverages: leveragesOf(solved),
+    leverages: leveragesOf(solved.basis, response.high.length),
     residualFreedom: response.high.length - design.columns.length,
     estimatedParameters: structure.parameters.filter((parameter) => parameter.fixed === null).length,
     digits: digitsOf(solved, errors),
@@ -115,28 +120,6 @@ export function errorsOf(of: {
 /** Root of sum c^2 v, the error of the combination of cells with these pulls; NaN where a variance is. */
 export function errorOf(pull: Float64Array, variances: Float64Array): number {
   return lengthOf(pull.map((c, g) => c * Math.sqrt(variances[g] as number)));
-}
-
-/** Diagonal of Q Q': at most 1, to rounding. */
-export function leveragesOf({ basis, residuals }: Solved): Float64Array {
-  const sums = new Float64Array(residuals.length);
-  for (const vector of basis)
-    for (let g = 0; g < sums.length; g++) sums[g] = (sums[g] as number) + (vector[g] as number) * (vector[g] as number);
-  return sums.map((h) => Math.min(h, 1));
-}
-
-/** C diag(v) C' times a scale, as rows. */
-export function spreadOf(pulls: readonly Float64Array[], variances: Float64Array, scale = 1): Float64Array[] {
-  const rows = pulls.map(() => new Float64Array(pulls.length));
-  for (let i = 0; i < pulls.length; i++)
-    for (let j = i; j < pulls.length; j++) {
-      const [a, b] = [pulls[i] as Float64Array, pulls[j] as Float64Array];
-      let sum = 0;
-      for (let g = 0; g < a.length; g++) sum += (a[g] as number) * (variances[g] as number) * (b[g] as number);
-      (rows[i] as Float64Array)[j] = sum * scale;
-      (rows[j] as Float64Array)[i] = sum * scale;
-    }
-  return rows;
 }
 
 /**

@@ -1,5 +1,6 @@
 import { freeParameters, interiorPoint, withFixed } from '../model/structure';
-import { bestScale, type Climb, climb, type Place, scalesTogether } from './ascent';
+import { bestScale, climb, type Place, scalesTogether } from './ascent';
+import type { Climb } from './ascent-step';
 import { heightAt, likelihoodAt } from './likelihood';
 
 /** A score above this share of its own standard deviation rises. */

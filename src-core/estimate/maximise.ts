@@ -1,8 +1,9 @@
 import { freeParameters, interiorPoint, type Structure, withFixed } from '../model/structure';
 import { done, type Outcome, refuse } from '../protocol/outcome';
-import { type Arrival, bestScale, type Climb, climb, type Place, scalesTogether } from './ascent';
+import type { Hooks } from '../protocol/source';
+import { type Arrival, bestScale, climb, type Place, scalesTogether } from './ascent';
+import type { Climb } from './ascent-step';
 import { leavingBoundary } from './follow';
-import type { Hooks } from './hooks';
 import { freedomOf, heightAt } from './likelihood';
 import { startsOf } from './starts';
 
@@ -36,7 +37,7 @@ export interface Maximum {
  */
 export function maximise(model: Climb & { readonly hooks?: Hooks; readonly from?: Float64Array }): Outcome<Maximum> {
   const { rows, structure, hooks } = model;
-  if (hooks?.cancelled?.()) return refuse('cancelled', {});
+  if (hooks?.cancelled()) return refuse('cancelled', {});
   const free = freeParameters(structure);
   if (free.length === 0) return fixedPoint(model);
   if (rows.perfect || freedomOf(model) <= 0 || rows.cells === rows.terms)
@@ -46,7 +47,7 @@ export function maximise(model: Climb & { readonly hooks?: Hooks; readonly from?
   const starts = model.from ? [model.from] : startsOf(model, CLIMBS);
   const arrivals: Arrival[] = [];
   for (const start of [...starts, ...edges.flatMap(({ inside }) => inside)]) {
-    if (hooks?.cancelled?.()) return refuse('cancelled', {});
+    if (hooks?.cancelled()) return refuse('cancelled', {});
     arrivals.push(climb(model, start));
   }
   return highest(model, arrivals, edges);

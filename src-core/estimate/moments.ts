@@ -1,9 +1,9 @@
 import { leastSquares } from '../algebra/least-squares';
+import { leveragesOf } from '../algebra/orthonormal';
 import type { Design } from '../model/design';
 import type { Structure } from '../model/structure';
 import type { Decimals } from '../numbers/decimals';
 import type { MomentRule } from '../protocol/plan';
-import { leveragesOf } from './fit-at';
 
 interface MomentModel {
   readonly response: Decimals;
@@ -47,7 +47,7 @@ export function heterogeneityAt(
   const variances = variancesWith(model.structure, tau2);
   const solved = leastSquares({ columns: model.design.columns, y: model.response, variances });
   if ('dependent' in solved) throw new RangeError('columns depend on each other under the weights alone');
-  const leverages = leveragesOf(solved);
+  const leverages = leveragesOf(solved.basis, solved.residuals.length);
   let [q, slope, trace] = [0, 0, 0];
   for (let g = 0; g < variances.length; g++) {
     const v = variances[g] as number;
@@ -70,7 +70,7 @@ function hanushek(model: MomentModel, freedom: number): number {
   const sampling = variancesWith(model.structure, 0);
   const solved = leastSquares({ columns: model.design.columns, y: model.response, variances: null });
   if ('dependent' in solved) throw new RangeError('the design was not checked');
-  const leverages = leveragesOf(solved);
+  const leverages = leveragesOf(solved.basis, solved.residuals.length);
   let left = 0;
   for (let g = 0; g < sampling.length; g++) {
     const e = solved.residuals[g] as number;

@@ -1,10 +1,12 @@
 import { freeParameters, interiorPoint, type Structure } from '../model/structure';
-import { bestScale, type Climb, scalesTogether } from './ascent';
+import { mean } from '../numbers/sums';
+import { bestScale, scalesTogether } from './ascent';
+import type { Climb } from './ascent-step';
 import { heightAt } from './likelihood';
 
 /** tau^2 and phi at these multiples of a middle size, delta at these values. */
 const SIZES = [1e-3, 1e-2, 0.1, 0.3, 1, 3, 10, 100];
-const EXPONENTS = [-0.5, 0, 0.5, 1, 1.5, 2];
+const EXPONENTS = [-1, -0.5, 0, 0.5, 1, 1.5, 2, 3];
 
 /**
  * Where a search should begin: the points of a coarse grid whose likelihood no neighbour on the grid exceeds, the highest first.
@@ -25,10 +27,15 @@ export function startsOf(model: Climb, most: number): Float64Array[] {
     (all, axis) => all.flatMap((place) => axis.values.map((_, n) => [...place, n])),
     [[]],
   );
+  // Beside an exponent tau^2 is counted in what the sampling part amounts to at that exponent.
+  const beside = scalesTogether(structure) && structure.exponentAt >= 0 && structure.betweenAt >= 0;
+  const samplingAt = (theta: Float64Array) => mean(structure.variancesAt(theta.with(structure.betweenAt, 0)));
   const heights = new Map<string, { theta: Float64Array; height: number }>();
   for (const place of places) {
     const theta = middle.slice();
     for (const [a, axis] of axes.entries()) theta[axis.i] = axis.values[place[a] as number] as number;
+    if (beside)
+      theta[structure.betweenAt] = ((theta[structure.betweenAt] as number) * samplingAt(theta)) / samplingAt(middle);
     const best = bestScale(model, theta);
     heights.set(place.join(), { theta: best?.theta ?? theta, height: best?.logLikelihood ?? -Infinity });
   }

@@ -1,5 +1,6 @@
+import { spanOf } from '../algebra/orthonormal';
 import { fUpper } from '../numbers/distributions';
-import { basisOf, dot, sumOfSquares } from './basis';
+import { plainDot, plainSquares } from '../numbers/sums';
 import { type Frame, kindsOf } from './frame';
 import { evidenceOf, notApplicable } from './reading';
 
@@ -23,7 +24,7 @@ export function dumouchelDuncan(frame: Frame) {
   const detail = { added: constant ? 'size' : 'variance' };
   // The whitened columns' own basis spans the same space as the columns, and its products with v the same as theirs.
   const columns = frame.basis.map((q) => q.map((x, g) => x * (factors[g] as number)));
-  const added = basisOf(columns, frame.basis);
+  const added = spanOf(columns, frame.basis);
   if (added.length === 0) return notApplicable(test, 'nothing-added', detail);
   const freedom1 = added.length;
   const freedom2 = frame.freedom - freedom1;
@@ -32,11 +33,11 @@ export function dumouchelDuncan(frame: Frame) {
   const left = frame.residuals.slice();
   let explained = 0;
   for (const q of added) {
-    const along = dot(q, left);
+    const along = plainDot(q, left);
     explained += along * along;
     for (let g = 0; g < left.length; g++) left[g] = (left[g] as number) - along * (q[g] as number);
   }
-  const rest = sumOfSquares(left) / freedom2;
+  const rest = plainSquares(left) / freedom2;
   if (!(rest > 0)) return notApplicable(test, 'no-variation', { ...detail, columns: freedom1 });
   const statistic = explained / freedom1 / rest;
   const p = fUpper(statistic, freedom1, freedom2);

@@ -1,6 +1,7 @@
 import { reflectAll } from '../algebra/householder';
+import { projectOut, spanOf } from '../algebra/orthonormal';
 import { log } from '../numbers/elementary';
-import { basisOf, projectOut, sumOfSquares } from './basis';
+import { plainSquares } from '../numbers/sums';
 
 /** A likelihood in which only a free scale is left to maximise over: it profiles out. */
 export interface Rule {
@@ -28,7 +29,7 @@ export function likelihoodsOf(basis: readonly Float64Array[], rule: Rule): (shap
     const roots = shape.map((a) => Math.sqrt(a));
     const whiten = (column: Float64Array) => column.map((x, g) => x / (roots[g] as number));
     const moved = basis.map(whiten);
-    const orthonormal = basisOf(moved);
+    const orthonormal = spanOf(moved);
     const freedom = shape.length - (rule.restricted ? basis.length : 0);
     let offset = shape.reduce((sum, a) => sum + log(a), 0);
     if (rule.restricted)
@@ -38,7 +39,7 @@ export function likelihoodsOf(basis: readonly Float64Array[], rule: Rule): (shap
     return {
       twiceLogLikelihood: (response) => {
         for (let g = 0; g < work.length; g++) work[g] = (response[g] as number) / (roots[g] as number);
-        const left = sumOfSquares(projectOut(orthonormal, work, residuals));
+        const left = plainSquares(projectOut(orthonormal, work, residuals));
         return -offset - (rule.freeScale ? freedom * log(left / freedom) + freedom : left);
       },
     };

@@ -14,6 +14,7 @@ import { evidenceOf, notApplicable, withDeparture } from './reading';
  *
  * Not applicable without a between part or with tau^2 set by the user, under methods other than full and restricted, and where the
  * size exponent is estimated beside it.
+ * With phi at 0 in the fit the ratio stands, and no departure is told: there is no sampling part for it to stand beside.
  * detail: zero (["tau2"]), weights of chi-square on 0, 1, 2, correlation (null for one variance), likelihood.
  * Source: Self & Liang 1987.
  */

@@ -5,6 +5,7 @@ import { type Decimals, scaledBy, takeRows } from '../numbers/decimals';
 import type { SelfCheckCode } from '../protocol/cautions';
 import type { Part, Plan } from '../protocol/plan';
 import type { SelfCheck } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
 import { take, takeCells, takeDesign } from './subset';
 
@@ -19,6 +20,7 @@ interface Sources {
   readonly fitted: Fitted;
   readonly cells: Cells;
   readonly plan: Plan;
+  readonly hooks?: Hooks;
 }
 
 /** What a refit starts from, and by what each coefficient and its error are then expected to be multiplied. */
@@ -34,7 +36,7 @@ interface Changed {
 
 /** Changes that must leave the coefficients and their errors as they were, or multiply them by a known factor. */
 export function invarianceChecks(sources: Sources): SelfCheck[] {
-  const { fitted, cells } = sources;
+  const { fitted, cells, hooks } = sources;
   if (!fitted.errors.every((error) => error > 0)) return [];
   const k = fitted.coefficients.length;
   const changes = [rowsReversed(sources)];
@@ -46,14 +48,25 @@ export function invarianceChecks(sources: Sources): SelfCheck[] {
       ...columnUnit(sources),
       ...cellSplit(sources),
     );
-  return changes.map((changed) => judged(sources, changed));
+  return changes.flatMap((changed, i) => {
+    if (hooks?.cancelled()) return [];
+    hooks?.progress('sensitivity', i / changes.length);
+    return [judged(sources, changed)];
+  });
 }
 
-function judged({ fitted, plan }: Sources, changed: Changed): SelfCheck {
+function judged({ fitted, plan, hooks }: Sources, changed: Changed): SelfCheck {
   const { check, cells, response, design, weighting } = changed;
   const structure = structureOf({ variance: plan.variance, cells });
   const again = structure.ok
-    ? fitStructure({ response, design, structure: structure.value, estimate: plan.estimate, weighting })
+    ? fitStructure({
+        response,
+        design,
+        structure: structure.value,
+        estimate: plan.estimate,
+        weighting,
+        ...(hooks && { hooks }),
+      })
     : structure;
   if (!again.ok) return { check, passed: false, figure: null };
   const figure = departure(fitted, again.value, changed);

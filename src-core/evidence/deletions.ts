@@ -1,6 +1,7 @@
 import type { Fitted } from '../estimate/fitted';
 import type { Plan } from '../protocol/plan';
 import type { Coefficient } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
 import { blockShiftsOf } from './block-shifts';
 import { groupingColumns } from './carried-by';
@@ -43,8 +44,9 @@ export function deletions(of: {
   readonly plan: Plan;
   readonly coefficients: readonly Coefficient[];
   readonly asked: (j: number) => boolean;
+  readonly hooks?: Hooks;
 }): Deletion[] {
-  const { fitted, cells, plan, coefficients, asked } = of;
+  const { fitted, cells, plan, coefficients, asked, hooks } = of;
   if (fitted.residualFreedom <= 0) return [];
   const judge = judgeOf(cells, plan);
   const candidates = [cellCandidates(fitted, cells), blockCandidates(fitted, cells)];
@@ -57,7 +59,8 @@ export function deletions(of: {
   const refits = new Map<Candidate, readonly Coefficient[] | null>();
   return largest.flatMap(({ candidate, j }): Deletion[] => {
     if (!refits.has(candidate)) {
-      if (refits.size >= limit) return [];
+      if (refits.size >= limit || hooks?.cancelled()) return [];
+      hooks?.progress('sensitivity', refits.size / limit);
       const rows = placesWithout(cells.count, new Set(candidate.gone));
       const left = heldFit(fitted, rows);
       refits.set(candidate, left && judge(left, rows));

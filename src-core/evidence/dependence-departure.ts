@@ -1,8 +1,8 @@
 import { largestOf, powerOfTwoBelow } from '../algebra/powers-of-two';
 import { normalUpperQuantile } from '../numbers/distributions';
+import { plainDot, plainSquares } from '../numbers/sums';
 import type { NoDeparture } from '../protocol/evidence';
 import type { SmallestDeparture } from '../protocol/result';
-import { dot, sumOfSquares } from './basis';
 import { largestCorrelation } from './correlated-draws';
 import { errorsFrom } from './departure-errors';
 import { overCells, overGroups } from './dependence-draws';
@@ -52,7 +52,7 @@ export function dependenceDeparture(known: Known): SmallestDeparture | NoDepartu
     const spread = pull.map((c, g) => c * (roots[g] as number));
     const unit = powerOfTwoBelow(largestOf(spread));
     const scaled = spread.map((c) => c / unit);
-    return unit * Math.sqrt(Math.max(0, sumOfSquares(scaled) + rho * dot(scaled, partnerSums(pairs, scaled))));
+    return unit * Math.sqrt(Math.max(0, plainSquares(scaled) + rho * plainDot(scaled, partnerSums(pairs, scaled))));
   });
   return { measure: 'common-correlation', size: rho, errors };
 }

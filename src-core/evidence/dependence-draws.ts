@@ -1,5 +1,6 @@
+import { spanOf } from '../algebra/orthonormal';
 import { chiSquareUpperQuantile, normalUpper } from '../numbers/distributions';
-import { basisOf, dot, sumOfSquares } from './basis';
+import { plainDot, plainSquares } from '../numbers/sums';
 import { correlateBy, correlateInside } from './correlated-draws';
 import { normalRows } from './draws';
 import type { Frame } from './frame';
@@ -9,6 +10,9 @@ interface Known {
   readonly frame: Frame;
   readonly pairs: Pairs;
 }
+
+/** Up to this freedom drawing every square costs less than one quantile. */
+const FEW_SQUARES = 60;
 
 /** Draws, and I of each. */
 type Drawn = { readonly draws: readonly Float64Array[]; readonly statistic: (draw: Float64Array) => number };
@@ -27,17 +31,13 @@ export function overGroups({ frame, pairs }: Known): (rho: number) => Drawn {
     for (const g of rows) column[g] = 1;
     return column;
   });
-  const added = basisOf(indicators, basis);
-  const links = indicators.map((column) => Float64Array.from(added, (t) => dot(t, column)));
+  const added = spanOf(indicators, basis);
+  const links = indicators.map((column) => Float64Array.from(added, (t) => plainDot(t, column)));
   const size = added.length;
   const rest = count - basis.length - size;
-  const draws = normalRows(size + groups.length + 1);
-  const restOf = new Map(
-    draws.map((draw) => [
-      draw,
-      rest > 0 ? chiSquareUpperQuantile(normalUpper(draw[draw.length - 1] as number), rest) : 0,
-    ]),
-  );
+  const from = size + groups.length;
+  const draws = normalRows(from + (rest > FEW_SQUARES ? 1 : rest));
+  const restOf = new Map(draws.map((draw) => [draw, chiSquareFrom(draw.subarray(from), rest)]));
   const scale = count / pairs.total;
   return (rho) => {
     const own = Math.sqrt(1 - rho);
@@ -46,12 +46,18 @@ export function overGroups({ frame, pairs }: Known): (rho: number) => Drawn {
     const statistic = (draw: Float64Array) => {
       for (let i = 0; i < size; i++) coordinates[i] = own * (draw[i] as number);
       for (const [j, link] of links.entries()) addTo(coordinates, link, shared * (draw[size + j] as number));
-      const squares = links.reduce((sum, link) => sum + dot(link, coordinates) * dot(link, coordinates), 0);
-      const total = sumOfSquares(coordinates) + (1 - rho) * (restOf.get(draw) as number);
+      const squares = links.reduce((sum, link) => sum + plainDot(link, coordinates) * plainDot(link, coordinates), 0);
+      const total = plainSquares(coordinates) + (1 - rho) * (restOf.get(draw) as number);
       return scale * (squares / total - 1);
     };
     return { draws, statistic };
   };
+}
+
+/** A chi-square on a freedom: the sum of as many squares where those are drawn, else by the quantile of the one number drawn. */
+function chiSquareFrom(drawn: Float64Array, freedom: number): number {
+  if (freedom <= FEW_SQUARES) return plainSquares(drawn);
+  return chiSquareUpperQuantile(normalUpper(drawn[0] as number), freedom);
 }
 
 /** I from residuals of correlated draws, cell by cell. */
@@ -64,7 +70,7 @@ export function overCells({ frame, pairs }: Known): (rho: number) => Drawn {
     const correlate = groups ? correlateInside(groups, rho) : correlateBy(pairs.partners ?? [], rho);
     const statistic = (draw: Float64Array) => {
       frame.leftOver(correlate(draw), residuals);
-      return (scale * dot(residuals, partnerSums(pairs, residuals))) / sumOfSquares(residuals);
+      return (scale * plainDot(residuals, partnerSums(pairs, residuals))) / plainSquares(residuals);
     };
     return { draws, statistic };
   };

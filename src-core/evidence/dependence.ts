@@ -1,6 +1,6 @@
 import { normalTwoSided } from '../numbers/distributions';
+import { plainDot, plainSquares } from '../numbers/sums';
 import type { Evidence } from '../protocol/result';
-import { dot, sumOfSquares } from './basis';
 import { dependenceDeparture } from './dependence-departure';
 import type { Frame } from './frame';
 import { momentsOf } from './moran';
@@ -42,5 +42,5 @@ function dependenceBy(frame: Frame, asked: { pairs: Pairs; cancelled: () => bool
 
 function statisticOf(pairs: Pairs, residuals: Float64Array): number {
   const scale = residuals.length / pairs.total;
-  return (scale * dot(residuals, partnerSums(pairs, residuals))) / sumOfSquares(residuals);
+  return (scale * plainDot(residuals, partnerSums(pairs, residuals))) / plainSquares(residuals);
 }

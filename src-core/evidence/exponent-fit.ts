@@ -1,5 +1,6 @@
 import { leastSquares, type Solved } from '../algebra/least-squares';
-import { errorsOf, leveragesOf, pullsOf } from '../estimate/fit-at';
+import { leveragesOf } from '../algebra/orthonormal';
+import { errorsOf, pullsOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
 import { LOG_TWO_PI } from '../estimate/likelihood';
 import { joinParts } from '../model/structure';
@@ -43,7 +44,7 @@ export function exponentFit(of: {
   if ('dependent' in solved || solved.perfect || freedom <= 0) return null;
   const cells = shape.length;
   const rss = sumOfSquares(solved.whitened);
-  const leverages = leveragesOf(solved);
+  const leverages = leveragesOf(solved.basis, shape.length);
   const logShape = -delta * sizes.total;
   const logGram = 2 * sum(solved.triangle.map((column, j) => log(Math.abs(column[j] as number))));
   const shares = solved.whitened.map((r) => (r * r) / rss);

@@ -1,10 +1,10 @@
 import { leastSquares, type Solved } from '../algebra/least-squares';
+import { projectOnto, projectOut, spanOf } from '../algebra/orthonormal';
 import { largestOf, powerOfTwoBelow } from '../algebra/powers-of-two';
 import type { Fitted } from '../estimate/fitted';
 import type { Design } from '../model/design';
 import type { Plan } from '../protocol/plan';
 import type { Cells } from '../table/cells';
-import { basisOf, projectOnto, projectOut } from './basis';
 import { normalRows } from './draws';
 
 /** What every test of the structure reads: the cells in whitened coordinates, a free scale left out. */
@@ -71,7 +71,7 @@ export function frameOf(known: {
 function leftOverOf(basis: readonly Float64Array[], count: number): Frame['leftOver'] {
   if (2 * basis.length <= count) return (errors, into) => projectOut(basis, errors, into);
   const units = Array.from({ length: count }, (_, g) => new Float64Array(count).fill(1, g, g + 1));
-  const others = basisOf(units, basis).slice(0, count - basis.length);
+  const others = spanOf(units, basis).slice(0, count - basis.length);
   return (errors, into) => projectOnto(others, errors, into);
 }
 

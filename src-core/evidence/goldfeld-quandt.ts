@@ -1,5 +1,6 @@
+import { spanOf } from '../algebra/orthonormal';
 import { fUpper, fUpperQuantile } from '../numbers/distributions';
-import { basisOf, dot, sumOfSquares } from './basis';
+import { plainDot, plainSquares } from '../numbers/sums';
 import type { Frame } from './frame';
 import { evidenceOf, LEVEL, notApplicable } from './reading';
 
@@ -55,7 +56,7 @@ interface End {
 
 function endOf(frame: Frame, rows: readonly number[]): End {
   const take = (column: Float64Array) => Float64Array.from(rows, (g) => column[g] as number);
-  const basis = basisOf(frame.basis.map(take));
+  const basis = spanOf(frame.basis.map(take));
   const y = new Float64Array(rows.length);
   return {
     rows,
@@ -63,10 +64,10 @@ function endOf(frame: Frame, rows: readonly number[]): End {
     squares: (residuals) => {
       for (let i = 0; i < y.length; i++) y[i] = residuals[rows[i] as number] as number;
       for (const q of basis) {
-        const along = dot(q, y);
+        const along = plainDot(q, y);
         for (let i = 0; i < y.length; i++) y[i] = (y[i] as number) - along * (q[i] as number);
       }
-      return sumOfSquares(y);
+      return plainSquares(y);
     },
   };
 }

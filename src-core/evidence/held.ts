@@ -1,9 +1,10 @@
 import { leastSquares } from '../algebra/least-squares';
-import { errorsOf, leveragesOf, pullsOf } from '../estimate/fit-at';
+import { leveragesOf } from '../algebra/orthonormal';
+import { throughDiagonal } from '../algebra/through-diagonal';
+import { errorsOf, pullsOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
 import { takeRows } from '../numbers/decimals';
 import { sumOfSquares } from '../numbers/sums';
-import { productOf } from './products';
 import { take, takeDesign, takeStructure } from './subset';
 
 /**
@@ -30,7 +31,7 @@ export function heldFit(fitted: Fitted, rows: readonly number[]): Fitted | null 
   if (scale !== null && fitted.structure.scaleAt >= 0) theta[fitted.structure.scaleAt] = scale;
   const variances = shape.map((v) => v * (scale ?? 1));
   const pulls = pullsOf(solved, weighting);
-  const covariance = productOf(pulls, pulls, variances);
+  const covariance = throughDiagonal(pulls, variances);
   return {
     ...fitted,
     response,
@@ -48,7 +49,7 @@ export function heldFit(fitted: Fitted, rows: readonly number[]): Fitted | null 
     errors: errorsOf({ covariance, pulls, variances }),
     pulls,
     gramInverse: solved.gramInverse,
-    leverages: leveragesOf(solved),
+    leverages: leveragesOf(solved.basis, rows.length),
     residualFreedom: rows.length - design.names.length,
     condition: solved.condition,
   };

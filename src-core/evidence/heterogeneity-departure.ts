@@ -1,7 +1,8 @@
+import { leveragesOf, projectOut } from '../algebra/orthonormal';
 import { chiSquareUpperQuantile } from '../numbers/distributions';
+import { plainSquares } from '../numbers/sums';
 import type { NoDeparture } from '../protocol/evidence';
 import type { SmallestDeparture } from '../protocol/result';
-import { leveragesOf, projectOut, sumOfSquares } from './basis';
 import { errorsUnder } from './departure-errors';
 import { MOST_SIMULATED, oftenEnough } from './draws';
 import type { Frame } from './frame';
@@ -59,7 +60,7 @@ function oftenFound(
   const residuals = new Float64Array(roots.length);
   return oftenEnough(known.draws, (draw) => {
     for (let g = 0; g < errors.length; g++) errors[g] = (draw[g] as number) * (roots[g] as number);
-    return sumOfSquares(projectOut(known.common.basis, errors, residuals)) > known.critical;
+    return plainSquares(projectOut(known.common.basis, errors, residuals)) > known.critical;
   });
 }
 

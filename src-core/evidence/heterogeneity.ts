@@ -1,8 +1,8 @@
+import { leveragesOf } from '../algebra/orthonormal';
 import { errorOf } from '../estimate/fit-at';
 import { chiSquareUpper, normalUpperQuantile, tUpperQuantile } from '../numbers/distributions';
-import { lengthOf } from '../numbers/sums';
+import { lengthOf, plainSquares } from '../numbers/sums';
 import type { DetailValue, Evidence } from '../protocol/result';
-import { leveragesOf, sumOfSquares } from './basis';
 import { type Frame, solvedUnder } from './frame';
 import { type Common, heterogeneityDeparture } from './heterogeneity-departure';
 import { evidenceOf, notApplicable, withDeparture } from './reading';
@@ -52,7 +52,7 @@ function commonOf({ fitted }: Frame): Common {
   return {
     basis,
     errors: sampling.map(Math.sqrt),
-    q: sumOfSquares(whitened),
+    q: plainSquares(whitened),
     traceM: sampling.reduce((sum, v, g) => sum + (1 - (leverages[g] as number)) / v, 0),
   };
 }

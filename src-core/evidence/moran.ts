@@ -1,4 +1,4 @@
-import { dot, sumOfSquares } from './basis';
+import { plainDot, plainSquares } from '../numbers/sums';
 import type { Frame } from './frame';
 import { type Pairs, partnerSums } from './pairs';
 
@@ -27,9 +27,9 @@ export function momentsOf(frame: Pick<Frame, 'basis' | 'count' | 'freedom'>, pai
   let trace = 0;
   let traceOfSquare = pairs.total;
   for (const [i, b] of moved.entries()) {
-    traceOfSquare -= 2 * sumOfSquares(b);
+    traceOfSquare -= 2 * plainSquares(b);
     for (const [j, q] of basis.entries()) {
-      const inside = dot(q, b);
+      const inside = plainDot(q, b);
       traceOfSquare += inside * inside;
       if (i === j) trace -= inside;
     }

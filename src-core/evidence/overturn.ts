@@ -1,6 +1,7 @@
 import type { Fitted } from '../estimate/fitted';
 import type { Plan, Rival } from '../protocol/plan';
 import type { Coefficient, Overturn } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
 import { crossing, shiftIn } from './crossing';
 import { type Deletion, deletions } from './deletions';
@@ -12,6 +13,7 @@ export interface OverturnSources {
   readonly plan: Plan;
   readonly coefficients: readonly Coefficient[];
   readonly rivals: readonly { readonly rival: Rival; readonly coefficients: readonly Coefficient[] }[];
+  readonly hooks?: Hooks;
   /** Coefficients at the ends of the supported exponents (`exponentScanOf`). */
   readonly ends: readonly { readonly delta: number; readonly coefficients: readonly Coefficient[] }[];
 }

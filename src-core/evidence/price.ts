@@ -1,16 +1,14 @@
 import { symmetricEigenvalues } from '../algebra/dense';
-import { reflectAll } from '../algebra/householder';
 import { largestOf, powerOfTwoBelow } from '../algebra/powers-of-two';
+import { throughDiagonal } from '../algebra/through-diagonal';
 import { underStructure } from '../estimate/fit';
 import { errorOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
 import type { RivalFit } from '../inference/fits';
 import { numberOrNull } from '../inference/reference';
-import { exp, log } from '../numbers/elementary';
-import { sum, sumOfSquares } from '../numbers/sums';
+import { sumOfSquares } from '../numbers/sums';
 import type { BesideResult, Price, SquareEntry } from '../protocol/result';
-import { solvedUnder } from './frame';
-import { differenceOf, productOf } from './products';
+import { efficiencyOf } from './efficiency';
 
 /**
  * What every rival weighting would cost if the fitted structure is true.
@@ -28,10 +26,10 @@ export function pricesOf(of: { readonly fitted: Fitted; readonly rivals: readonl
   const best = underStructure(fitted).pulls;
   const units = best.map((row) => powerOfTwoBelow(largestOf(row)));
   const inUnits = (rows: Square): Square => rows.map((row, j) => row.map((c) => c / (units[j] as number)));
-  const least = productOf(inUnits(best), inUnits(best), fitted.shape);
+  const least = throughDiagonal(inUnits(best), fitted.shape);
   return rivals.map(({ rival, fitted: beside, ...told }): BesideResult => {
     const apart = inUnits(differenceOf(beside.pulls, best));
-    const excess = productOf(apart, apart, fitted.shape);
+    const excess = throughDiagonal(apart, fitted.shape);
     const actual = least.map((row, i) => row.map((value, j) => value + at(excess, i, j)));
     const times = (value: number, i: number, j: number) =>
       value * (fitted.scale ?? 1) * (units[i] as number) * (units[j] as number);
@@ -103,25 +101,6 @@ function unscaledError({ pulls, shape }: Fitted, j: number): number {
   return errorOf(pulls[j] as Float64Array, shape);
 }
 
-/**
- * |X'X|^2 / (|X' Omega X| |X' Omega^-1 X|), by the triangles of an orthonormal basis of X under either weighting: units do not enter, and the
- * condition of X costs no digits.
- */
-function efficiencyOf(fitted: Fitted): number {
-  const { shape } = fitted;
-  const { basis } = solvedUnder(fitted, new Float64Array(shape.length).fill(1));
-  const largest = largestOf(shape);
-  const roots = shape.map((v) => Math.sqrt(v / largest));
-  const times = logDeterminant(basis.map((q) => q.map((x, g) => x * (roots[g] as number))));
-  const over = logDeterminant(basis.map((q) => q.map((x, g) => x / (roots[g] as number))));
-  return Math.min(1, exp(-2 * (times + over)));
-}
-
-/** ln |det R| of a tall matrix; its columns are overwritten. */
-function logDeterminant(columns: readonly Float64Array[]): number {
-  return sum(reflectAll(columns).triangle.map((column, j) => log(Math.abs(column[j] as number))));
-}
-
 /** Which cells move the answer from the chosen weighting to the rival's: (C_A - C)_jg r_g, r under the chosen fit; a row sums to b_A - b. */
 function movedOf(fitted: Fitted, beside: Fitted): BesideResult['moved'] {
   return fitted.design.names.map((term, j) => {
@@ -160,6 +139,10 @@ function ownTruth(fitted: Fitted): Float64Array {
 
 function at(rows: Square, i: number, j: number): number {
   return (rows[i] as Float64Array)[j] as number;
+}
+
+function differenceOf(a: Square, b: Square): Float64Array[] {
+  return a.map((row, j) => row.map((value, g) => value - ((b[j] as Float64Array)[g] as number)));
 }
 
 function rootOrNull(value: number): number | null {

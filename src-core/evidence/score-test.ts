@@ -1,8 +1,8 @@
+import { spanOf } from '../algebra/orthonormal';
 import { largestOf, powerOfTwoBelow } from '../algebra/powers-of-two';
 import { chiSquareUpper, chiSquareUpperQuantile } from '../numbers/distributions';
 import { log } from '../numbers/elementary';
 import type { EvidenceTest } from '../protocol/result';
-import { basisOf } from './basis';
 import type { Frame } from './frame';
 import { evidenceOf, LEVEL, notApplicable } from './reading';
 import { powerOn, strengthOn } from './squares-on-columns';
@@ -60,8 +60,8 @@ function scoreTest(frame: Frame, variant: Variant) {
   const { test, columns, studentised } = variant;
   const named = { columns: columns.map((column) => column.name) };
   if (columns.length === 0) return notApplicable(test, 'no-columns', named);
-  const constant = basisOf([new Float64Array(frame.count).fill(1)]);
-  const vectors = basisOf(
+  const constant = spanOf([new Float64Array(frame.count).fill(1)]);
+  const vectors = spanOf(
     columns.map((column) => column.values),
     constant,
   );

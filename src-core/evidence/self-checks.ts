@@ -3,6 +3,7 @@ import type { RivalFit } from '../inference/fits';
 import { sum } from '../numbers/sums';
 import type { Plan } from '../protocol/plan';
 import type { SelfCheck } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
 import { deletionChecks } from './checks-of-deletion';
 import { identityChecks } from './checks-of-identities';
@@ -18,6 +19,7 @@ export interface CheckSources {
   readonly cells: Cells;
   readonly plan: Plan;
   readonly rivals: readonly RivalFit[];
+  readonly hooks?: Hooks;
 }
 
 /**

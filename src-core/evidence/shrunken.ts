@@ -1,4 +1,5 @@
 import { largestOf } from '../algebra/powers-of-two';
+import { throughDiagonal } from '../algebra/through-diagonal';
 import type { Fitted } from '../estimate/fitted';
 import { tau2BiasOf } from '../inference/tau2-bias';
 import type { Parameter } from '../model/structure';
@@ -120,16 +121,13 @@ function restrictedInformation(fitted: Fitted, a: Float64Array, b: Float64Array)
 }
 
 /** C diag(a) Omega^-1 X: rows i, columns j. */
-function throughPulls(fitted: Fitted, a: Float64Array): Float64Array[] {
-  const { pulls, design, variances } = fitted;
-  return pulls.map((row) => {
-    const scaled = row.map((c, g) => (c * (a[g] as number)) / (variances[g] as number));
-    return Float64Array.from(design.columns, (column) => {
-      let sum = 0;
-      for (const [g, value] of scaled.entries()) sum += value * (column.high[g] as number);
-      return sum;
-    });
-  });
+function throughPulls({ pulls, design, variances }: Fitted, a: Float64Array): Float64Array[] {
+  const shares = a.map((value, g) => value / (variances[g] as number));
+  return throughDiagonal(
+    pulls,
+    shares,
+    design.columns.map(({ high }) => high),
+  );
 }
 
 /** b of the full likelihood, times (1 - own share)^2 to be taken off: - sum h / v over sum v^-2. */

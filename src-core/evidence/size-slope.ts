@@ -1,5 +1,6 @@
+import { spanOf } from '../algebra/orthonormal';
 import { tTwoSided, tUpperQuantile } from '../numbers/distributions';
-import { basisOf, dot } from './basis';
+import { plainDot } from '../numbers/sums';
 import { type Frame, kindsOf } from './frame';
 import { evidenceOf, LEVEL, notApplicable } from './reading';
 import { powerOn, strengthOn } from './squares-on-columns';
@@ -22,7 +23,7 @@ export function sizeSlope(frame: Frame) {
   if (frame.count < 3) return notApplicable(test, 'too-few-cells');
   const on = kind === 'constant' ? '1/size' : 'size';
   const x = kind === 'constant' ? frame.sizes.map((m) => 1 / m) : frame.sizes;
-  const vectors = basisOf([x], basisOf([new Float64Array(frame.count).fill(1)]));
+  const vectors = spanOf([x], spanOf([new Float64Array(frame.count).fill(1)]));
   const [z] = vectors;
   if (!z) return notApplicable(test, 'equal-sizes', { on });
 
@@ -59,8 +60,8 @@ function lineOf(data: { readonly x: Float64Array; readonly y: Float64Array; read
   const count = y.length;
   const meanX = x.reduce((sum, value) => sum + value, 0) / count;
   const meanY = y.reduce((sum, value) => sum + value, 0) / count;
-  const length = dot(z, x);
-  const along = dot(z, y);
+  const length = plainDot(z, x);
+  const along = plainDot(z, y);
   const left = y.reduce((sum, value, g) => {
     const residual = value - meanY - along * (z[g] as number);
     return sum + residual * residual;

@@ -1,4 +1,4 @@
-import { dot } from './basis';
+import { plainDot } from '../numbers/sums';
 import { upperOfSquares } from './quadratic-form';
 
 /** |Z'u|^2 over its spread, u the squares over their mean. The one scratch vector is the test's own. */
@@ -17,7 +17,7 @@ export function strengthOn(
     }
     const mean = sum / count;
     let explained = 0;
-    for (const z of vectors) explained += squareOf(dot(z, squares));
+    for (const z of vectors) explained += squareOf(plainDot(z, squares));
     let spread = 2 * mean * mean;
     if (studentised) {
       spread = 0;
@@ -43,10 +43,10 @@ export function powerOn(rule: {
     const count = multipliers.length;
     const total = multipliers.reduce((sum, d) => sum + d, 0);
     const relative = multipliers.map((d) => (d * count) / total);
-    const mean = vectors.map((z) => dot(z, relative));
+    const mean = vectors.map((z) => plainDot(z, relative));
     const moved = vectors.map((z, j) => z.map((x, g) => (x - (mean[j] as number) / count) * (relative[g] as number)));
-    const covariance = moved.map((a) => moved.map((b) => 2 * dot(a, b)));
-    const spread = studentised ? (3 * dot(relative, relative)) / count - 1 : 2;
+    const covariance = moved.map((a) => moved.map((b) => 2 * plainDot(a, b)));
+    const spread = studentised ? (3 * plainDot(relative, relative)) / count - 1 : 2;
     return upperOfSquares({ mean, covariance, threshold: critical * spread });
   };
 }

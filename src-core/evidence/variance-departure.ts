@@ -1,7 +1,7 @@
+import { leveragesOf } from '../algebra/orthonormal';
 import { exp, log } from '../numbers/elementary';
 import type { NoDeparture } from '../protocol/evidence';
 import type { Evidence, SmallestDeparture } from '../protocol/result';
-import { leveragesOf } from './basis';
 import { quartersOf } from './brown-forsythe';
 import { errorsUnder } from './departure-errors';
 import { MOST_SIMULATED, oftenEnough } from './draws';

@@ -1,8 +1,8 @@
 import { fitStructure } from '../estimate/fit';
 import type { Fitted } from '../estimate/fitted';
-import type { Hooks } from '../estimate/hooks';
 import type { Estimate } from '../protocol/plan';
 import type { BetweenRule } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import { coefficientsOf } from './coefficients';
 import { likelihoodsOf } from './likelihoods';
 import { parameterInterval } from './parameter-profile';
@@ -32,7 +32,7 @@ export function betweenRulesOf(fitted: Fitted, level: number, hooks?: Hooks): Be
   if (structure.betweenAt < 0 || structure.scaleAt >= 0 || structure.parameters[structure.betweenAt]?.fixed !== null)
     return [];
   const q = qProfileOf(likelihoodsOf(fitted), level);
-  return rules.map(({ rule, estimate }) => rowOf({ rule, fitted: refitted(fitted, estimate, hooks), q, level }));
+  return rules.map(({ rule, estimate }) => rowOf({ rule, fitted: refitted(fitted, estimate, hooks), q, level, hooks }));
 }
 
 function refitted(fitted: Fitted, estimate: Estimate, hooks?: Hooks): Fitted | null {
@@ -47,15 +47,16 @@ function rowOf(known: {
   readonly fitted: Fitted | null;
   readonly q: { readonly low: number | null; readonly high: number | null };
   readonly level: number;
+  readonly hooks: Hooks | undefined;
 }): BetweenRule {
-  const { rule, fitted, q, level } = known;
+  const { rule, fitted, q, level, hooks } = known;
   const ends = { qLow: q.low, qHigh: q.high };
   if (!fitted) return { rule, tau2: null, profileLow: null, profileHigh: null, ...ends, coefficients: [] };
   const { structure, theta, errors, residualFreedom } = fitted;
   const likely = rule === 'full' || rule === 'restricted';
   const tau2 = theta[structure.betweenAt] as number;
   const asked = { index: structure.betweenAt, level, step: null };
-  const profile = likely ? parameterInterval(likelihoodsOf(fitted), asked) : { low: null, high: null };
+  const profile = likely ? parameterInterval(likelihoodsOf(fitted), asked, hooks) : { low: null, high: null };
   return {
     rule,
     tau2,

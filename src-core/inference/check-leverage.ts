@@ -1,5 +1,5 @@
 import { leastSquares } from '../algebra/least-squares';
-import { leveragesOf } from '../estimate/fit-at';
+import { leveragesOf } from '../algebra/orthonormal';
 import type { Design } from '../model/design';
 import { fromDoubles } from '../numbers/decimals';
 import type { Plan } from '../protocol/plan';
@@ -22,5 +22,5 @@ export function checkLeverageOf(known: {
   const solved = leastSquares({ columns: design.columns, y, variances: null });
   if ('dependent' in solved) throw new RangeError('the design was not checked');
   const residualFreedom = labels.length - design.columns.length;
-  return checkLeverage({ plan, labels, residualFreedom, leverages: leveragesOf(solved) });
+  return checkLeverage({ plan, labels, residualFreedom, leverages: leveragesOf(solved.basis, labels.length) });
 }

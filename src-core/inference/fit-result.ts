@@ -4,6 +4,7 @@ import { chiSquareUpper } from '../numbers/distributions';
 import { sumOfSquares } from '../numbers/sums';
 import type { Plan } from '../protocol/plan';
 import type { CarriedBy, FitResult } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
 import { informationCriteria } from './criteria';
 import { goodnessOfFit } from './goodness';
@@ -28,6 +29,7 @@ export function fitResultOf(known: {
   readonly plan: Plan;
   readonly carriedBy: CarriedBy[];
   readonly likelihoods?: Likelihoods;
+  readonly hooks?: Hooks;
 }): FitResult {
   const { fitted, inferred, cells, plan, carriedBy } = known;
   const likelihoods = known.likelihoods ?? likelihoodsOf(fitted);
@@ -39,7 +41,7 @@ export function fitResultOf(known: {
     coefficients: inferred.coefficients,
     covariance: inferred.covariance,
     carriedBy,
-    variance: varianceParametersOf(likelihoods, plan.inference.level),
+    variance: varianceParametersOf(likelihoods, plan.inference.level, known.hooks),
     residualSd: residualFreedom > 0 ? Math.sqrt(weightedRss / residualFreedom) : null,
     weightedRss,
     residualFreedom,

@@ -105,7 +105,7 @@ function fitRival(rival: Rival, structure: Structure, { plan, model, hooks }: As
   return done({
     rival,
     fitted: fitted.value,
-    parameters: varianceParametersOf(likelihoods, plan.inference.level),
+    parameters: varianceParametersOf(likelihoods, plan.inference.level, hooks),
     coefficients: inferred.value.coefficients,
     logLikelihood: likelihoods.full,
     restrictedLogLikelihood: likelihoods.restricted,

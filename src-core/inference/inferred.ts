@@ -1,3 +1,4 @@
+import { throughDiagonal } from '../algebra/through-diagonal';
 import { underStructure } from '../estimate/fit';
 import { errorOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
@@ -8,7 +9,7 @@ import type { Cells } from '../table/cells';
 import { coefficientsOf } from './coefficients';
 import { knappHartungFactor } from './knapp-hartung';
 import { numberOrNull, standardNormal, studentOn } from './reference';
-import { checkLeverage, robustSpread, sandwich } from './robust';
+import { checkLeverage, robustSpread } from './robust';
 import { errorFreedomsOf, freedomRange, satterthwaiteFreedom } from './satterthwaite';
 
 /** A variance below this, the smallest normal double, has lost its digits: it is undefined, and not 0. */
@@ -107,7 +108,8 @@ function spreadOf(fitted: Fitted, inference: Inference, factor: number | null): 
 function covarianceOf(fitted: Fitted, inference: Inference, known: Spread): (number | null)[][] {
   const { spread, factor } = known;
   if (spread === null) return fitted.pulls.map(() => fitted.pulls.map(() => null));
-  if (inference.kind === 'robust') return sandwich(fitted.pulls, spread).map((row) => row.map(numberOrNull));
+  if (inference.kind === 'robust')
+    return throughDiagonal(fitted.pulls, spread).map((row) => Array.from(row, numberOrNull));
   return fitted.covariance.map((row, i) =>
     Array.from(row, (value, j) => {
       const vanished = i === j && Math.abs(value) < LEAST_VARIANCE && fitted.scale !== 0;

@@ -4,6 +4,7 @@ import { follow } from '../estimate/follow';
 import { maximise } from '../estimate/maximise';
 import { freeParameters, type Structure, withFixed } from '../model/structure';
 import { log } from '../numbers/elementary';
+import type { Hooks } from '../protocol/source';
 import { isRestricted, type Likelihoods, ownLikelihood } from './likelihoods';
 import { type Ends, type Profile, profileInterval } from './profile';
 
@@ -19,13 +20,14 @@ type ProfileLikelihood = (value: number) => number | null;
  *
  * index: of the parameter in the structure; step: about its standard error. Every value is judged with the other parameters at their best:
  * followed from the last value's, and searched for from all starts at the ends; where the search finds a higher hill, that is followed as well.
- * Null ends where the fit has no likelihood, or a side is open. Nothing in an exponent beyond those that are searched counts as found.
+ * Null ends where the fit has no likelihood, a side is open, or the run is cancelled (`hooks`). Nothing in an exponent beyond those that are searched counts as found.
  *
  * Example: the size exponent of 60 libraries, full likelihood: 0.2989 to 0.8728.
  */
 export function parameterInterval(
   likelihoods: Likelihoods,
   asked: { readonly index: number; readonly level: number; readonly step: number | null },
+  hooks?: Hooks,
 ): Ends {
   const { structure, theta, estimate } = likelihoods.fitted;
   const maximum = ownLikelihood(likelihoods);
@@ -38,11 +40,15 @@ export function parameterInterval(
       ? insideOf(WIDEST_EXPONENT, { of, estimate: value, maximum, level: asked.level, step })
       : profileInterval({ of, estimate: value, maximum, level: asked.level, floor: 0, ceiling: Infinity, step });
   if (freeParameters(structure).length === 1 && structure.commonScale) return ends(scaleProfile(likelihoods));
-  return overHills(likelihoods, asked.index, ends);
+  return overHills(likelihoods, { index: asked.index, ends, hooks });
 }
 
 /** The ends over the hills that are known, until a search at the ends finds no higher one. */
-function overHills({ fitted, rows }: Likelihoods, index: number, ends: (of: ProfileLikelihood) => Ends): Ends {
+function overHills(
+  { fitted, rows }: Likelihoods,
+  asked: { readonly index: number; readonly ends: (of: ProfileLikelihood) => Ends; readonly hooks: Hooks | undefined },
+): Ends {
+  const { index, ends, hooks } = asked;
   const { structure } = fitted;
   const name = structure.parameters[index]?.name as string;
   const at = (value: number) => ({
@@ -53,6 +59,7 @@ function overHills({ fitted, rows }: Likelihoods, index: number, ends: (of: Prof
   const nothing = (value: number) => value === 0 && index === structure.scaleAt && structure.betweenAt < 0;
   const hills = [fitted.theta];
   const followed: ProfileLikelihood = (value) => {
+    if (hooks?.cancelled()) return null;
     if (nothing(value)) return -Infinity;
     let highest: number | null = null;
     for (const [i, from] of hills.entries()) {

@@ -55,21 +55,6 @@ export function robustSpread(fitted: Fitted, correction: RobustCorrection): Floa
   return residuals.map((r, g) => r * r * correctionOf(correction, leverages[g] as number, counts));
 }
 
-/** C diag(spread) C': k x k, rows, summed over the cells in their order. */
-export function sandwich(pulls: readonly Float64Array[], spread: Float64Array): number[][] {
-  const rows = pulls.map(() => new Array<number>(pulls.length).fill(0));
-  for (const [j, first] of pulls.entries())
-    for (let l = 0; l <= j; l++) {
-      const second = pulls[l] as Float64Array;
-      let sum = 0;
-      for (let g = 0; g < spread.length; g++)
-        sum += (first[g] as number) * (second[g] as number) * (spread[g] as number);
-      (rows[j] as number[])[l] = sum;
-      (rows[l] as number[])[j] = sum;
-    }
-  return rows;
-}
-
 function correctionOf(
   correction: RobustCorrection,
   leverage: number,

@@ -2,6 +2,7 @@ import { symmetricInverse } from '../algebra/dense';
 import { likelihoodAt } from '../estimate/likelihood';
 import { freeParameters } from '../model/structure';
 import type { VarianceParameter } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import type { Likelihoods } from './likelihoods';
 import { parameterInterval } from './parameter-profile';
 import type { Ends } from './profile';
@@ -17,7 +18,7 @@ import { numberOrNull } from './reference';
  *
  * Example: thirteen vaccine trials on latitude, restricted: tau2 0.076348, error 0.059047, 0.005807 to 0.443216.
  */
-export function varianceParametersOf(likelihoods: Likelihoods, level: number): VarianceParameter[] {
+export function varianceParametersOf(likelihoods: Likelihoods, level: number, hooks?: Hooks): VarianceParameter[] {
   const { structure, theta } = likelihoods.fitted;
   const errors = informationErrors(likelihoods);
   return structure.parameters.map(({ name, role, fixed }, index) => {
@@ -25,15 +26,19 @@ export function varianceParametersOf(likelihoods: Likelihoods, level: number): V
     if (fixed !== null || estimate === null)
       return { name, estimate, se: null, low: null, high: null, atBoundary: false, fixed: fixed !== null };
     const se = errors?.[index] ?? null;
-    const { low, high } = intervalOf(likelihoods, { index, level, step: se });
+    const { low, high } = intervalOf(likelihoods, { index, level, step: se }, hooks);
     const atBoundary = role !== 'exponent' && estimate === 0;
     return { name, estimate, se, low, high, atBoundary, fixed: false };
   });
 }
 
-function intervalOf(likelihoods: Likelihoods, asked: { index: number; level: number; step: number | null }): Ends {
+function intervalOf(
+  likelihoods: Likelihoods,
+  asked: { index: number; level: number; step: number | null },
+  hooks?: Hooks,
+): Ends {
   const { method } = likelihoods.fitted.estimate;
-  if (method === 'full' || method === 'restricted') return parameterInterval(likelihoods, asked);
+  if (method === 'full' || method === 'restricted') return parameterInterval(likelihoods, asked, hooks);
   if (method === 'moments') return qProfileOf(likelihoods, asked.level);
   return { low: null, high: null };
 }

@@ -81,7 +81,7 @@ function assemble(cells: number, sampling: SamplingPart, parameters: readonly Pa
     scaleAt,
     betweenAt,
     exponentAt,
-    commonScale: scaleAt >= 0 && parameters[scaleAt]?.fixed === null && betweenAt < 0,
+    commonScale: scalesAll(parameters, { scaleAt, betweenAt }),
     variancesAt: (theta) => {
       const scale = parameterOr(theta, scaleAt, 1);
       const tau2 = parameterOr(theta, betweenAt, 0);
@@ -110,8 +110,15 @@ export function withFixed(structure: Structure, name: string, value: number | nu
   const parameters = structure.parameters.map((parameter) =>
     parameter.name === name ? { ...parameter, fixed: value } : parameter,
   );
-  const scale = parameters[structure.scaleAt];
-  return { ...structure, parameters, commonScale: scale?.fixed === null && structure.betweenAt < 0 };
+  return { ...structure, parameters, commonScale: scalesAll(parameters, structure) };
+}
+
+/** One free phi, and no between part or one that is set to 0. */
+function scalesAll(
+  parameters: readonly Parameter[],
+  { scaleAt, betweenAt }: Pick<Structure, 'scaleAt' | 'betweenAt'>,
+): boolean {
+  return parameters[scaleAt]?.fixed === null && (betweenAt < 0 || parameters[betweenAt]?.fixed === 0);
 }
 
 /** Indices of the parameters that are estimated. */

@@ -54,6 +54,18 @@ export function sumOfSquares(values: ArrayLike<number>): number {
   return dot(values, values);
 }
 
+/** The sum of products as doubles add up: for loops over draws, where last digits do not count and time does. Example: plainDot([1, 2], [3, 4]) = 11. */
+export function plainDot(a: ArrayLike<number>, b: ArrayLike<number>): number {
+  let total = 0;
+  for (let g = 0; g < a.length; g++) total += (a[g] as number) * (b[g] as number);
+  return total;
+}
+
+/** The sum of squares as doubles add up. Example: plainSquares([3, 4]) = 25. */
+export function plainSquares(values: ArrayLike<number>): number {
+  return plainDot(values, values);
+}
+
 /** The arithmetic mean; an empty list has none and throws, a caller's bug. Example: mean([1, 2, 6]) = 3. */
 export function mean(values: ArrayLike<number>): number {
   if (values.length === 0) throw new RangeError('an empty list has no mean');

@@ -84,7 +84,6 @@ const tables: readonly Table[] = [
   },
   {
     name: 'sizes over twelve orders',
-    everyMethod: true,
     x: count(13),
     y: count(13).map((g) => g + wobble(g)),
     n: count(13).map((g) => 10 ** g),

@@ -1,8 +1,9 @@
 import type { Outcome } from '@core/protocol/outcome';
 import { done } from '@core/protocol/outcome';
 import type { Result } from '@core/protocol/result';
+import type { Hooks } from '@core/protocol/source';
 import { validateResult } from '@core/protocol/validate-result';
-import { runText } from '@main/engine/run-plan';
+import { runText, unhurried } from '@main/engine/run-plan';
 import { expect } from 'vitest';
 
 export type Columns = Readonly<Record<string, readonly (number | string)[]>>;
@@ -12,11 +13,15 @@ export type Said = Readonly<Record<string, unknown>>;
 
 /** A plan on a table, from its text and the bytes of the table to the result. */
 export function runOn(columns: Columns, said: Said): Outcome<Result> {
+  return hookedRun(columns, said, unhurried);
+}
+
+export function hookedRun(columns: Columns, said: Said, hooks: Hooks): Outcome<Result> {
   const names = Object.keys(columns);
   const rows = (columns[names[0] as string] ?? []).map((_, g) => names.map((name) => columns[name]?.[g]).join(','));
   const bytes = new TextEncoder().encode([names.join(','), ...rows].join('\n'));
   const text = JSON.stringify({ format: 'steelyard-plan/1', data: { file: 'cells.csv' }, ...said });
-  const run = runText({ text, fetch: () => done(bytes) });
+  const run = runText({ text, fetch: () => done(bytes), hooks });
   return run.ok ? done(run.value.result) : run;
 }
 

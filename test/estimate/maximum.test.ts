@@ -99,7 +99,12 @@ describe('a maximum', () => {
   });
 
   it('is not looked for after a cancellation', () => {
-    const outcome = maximise({ rows, structure, restricted: true, hooks: { cancelled: () => true } });
+    const outcome = maximise({
+      rows,
+      structure,
+      restricted: true,
+      hooks: { cancelled: () => true, progress: () => {} },
+    });
     expect(outcome).toMatchObject({ ok: false, problems: [{ code: 'cancelled' }] });
   });
 });

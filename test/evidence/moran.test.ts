@@ -1,4 +1,4 @@
-import { basisOf } from '@core/evidence/basis';
+import { spanOf } from '@core/algebra/orthonormal';
 import { momentsOf } from '@core/evidence/moran';
 import { type Pairs, pairingsOf, partnerSums } from '@core/evidence/pairs';
 import { seeded } from '@core/numbers/random';
@@ -56,7 +56,7 @@ test.each(pairings.map((pairs) => [pairs.order ?? pairs.by[0], pairs] as const))
   (_, pairs) => {
     const { normal } = seeded(3);
     const { count } = cells;
-    const basis = basisOf([0, 1, 2].map(() => new Float64Array(count).map(() => normal())));
+    const basis = spanOf([0, 1, 2].map(() => new Float64Array(count).map(() => normal())));
     const freedom = count - 3;
     const unit = (g: number) => new Float64Array(count).map((__, h) => (g === h ? 1 : 0));
     const b = cells.labels.map((__, g) => partnerSums(pairs, unit(g)));

@@ -1,6 +1,7 @@
-import { basisOf, dot } from '@core/evidence/basis';
+import { spanOf } from '@core/algebra/orthonormal';
 import { normalLower, normalUpper } from '@core/numbers/distributions';
 import { log } from '@core/numbers/elementary';
+import { plainDot } from '@core/numbers/sums';
 import { expect, test } from 'vitest';
 import { type FittedCase, fittedCase } from './fitted-case';
 import { type Redrawn, rejectionShare } from './redrawn';
@@ -58,10 +59,10 @@ test('the boundary likelihood ratio rejects in at most about 5 of 100 draws wher
 
 test('where large cells have large leverage the size score rejects as much oftener as their smaller residuals explain', () => {
   const { fitted, cells } = perSize;
-  const constantColumn = basisOf([new Float64Array(cells.count).fill(1)]);
-  const [z] = basisOf([(cells.effectiveSize as Float64Array).map((m) => log(m))], constantColumn);
+  const constantColumn = spanOf([new Float64Array(cells.count).fill(1)]);
+  const [z] = spanOf([(cells.effectiveSize as Float64Array).map((m) => log(m))], constantColumn);
   const expected = fitted.leverages.map((h) => ((1 - h) * cells.count) / fitted.residualFreedom);
-  const shift = dot(z as Float64Array, expected) / Math.sqrt(2);
+  const shift = plainDot(z as Float64Array, expected) / Math.sqrt(2);
   const explained = normalUpper(1.959964 - shift) + normalLower(-1.959964 - shift);
   const share = rejectionShare({
     of: perSize,

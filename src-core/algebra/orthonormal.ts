@@ -1,4 +1,6 @@
+import { plainDot, plainSquares } from '../numbers/sums';
 import { rankTolerance } from '../numbers/tolerances';
+import { largestOf } from './powers-of-two';
 
 /**
  * Orthonormal vectors that span what the columns add to an orthonormal start; a column that the earlier ones explain is dropped.
@@ -8,10 +10,10 @@ import { rankTolerance } from '../numbers/tolerances';
  * columns: of length G, any unit; start: orthonormal vectors of length G, not returned. None is changed.
  * A column is dropped where less than max(G, 10 k) eps of its length is left.
  *
- * Example: `basisOf([[1, 1], [2, 2]])` is one vector, (1, 1) / root 2.
+ * Example: `spanOf([[1, 1], [2, 2]])` is one vector, (1, 1) / root 2.
  * Source: Giraud, Langou & Rozloznik 2005 (twice is enough).
  */
-export function basisOf(columns: readonly Float64Array[], start: readonly Float64Array[] = []): Float64Array[] {
+export function spanOf(columns: readonly Float64Array[], start: readonly Float64Array[] = []): Float64Array[] {
   const tolerance = rankTolerance(columns[0]?.length ?? 0, columns.length + start.length);
   const basis: Float64Array[] = [];
   for (const column of columns) {
@@ -33,39 +35,28 @@ export function projectOut(
   into: Float64Array = new Float64Array(y.length),
 ): Float64Array {
   into.set(y);
-  for (const vector of basis) subtract(into, vector, dot(vector, into));
+  for (const vector of basis) subtract(into, vector, plainDot(vector, into));
   return into;
 }
 
 /** The projection of y on an orthonormal basis, into `into`. */
 export function projectOnto(basis: readonly Float64Array[], y: Float64Array, into: Float64Array): Float64Array {
   into.fill(0);
-  for (const vector of basis) subtract(into, vector, -dot(vector, y));
+  for (const vector of basis) subtract(into, vector, -plainDot(vector, y));
   return into;
 }
 
-export function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let g = 0; g < a.length; g++) sum += (a[g] as number) * (b[g] as number);
-  return sum;
-}
-
-export function sumOfSquares(a: Float64Array): number {
-  return dot(a, a);
-}
-
-/** Diagonal of Q Q': what the span takes of each cell. */
-export function leveragesOf(basis: readonly Float64Array[], count: number): Float64Array {
-  const leverages = new Float64Array(count);
+/** Diagonal of Q Q': what the span of an orthonormal basis takes of each cell, at most 1 to rounding. */
+export function leveragesOf(basis: readonly Float64Array[], cells: number): Float64Array {
+  const sums = new Float64Array(cells);
   for (const vector of basis)
-    for (let g = 0; g < count; g++)
-      leverages[g] = (leverages[g] as number) + (vector[g] as number) * (vector[g] as number);
-  return leverages;
+    for (let g = 0; g < cells; g++) sums[g] = (sums[g] as number) + (vector[g] as number) * (vector[g] as number);
+  return sums.map((h) => Math.min(h, 1));
 }
 
 function clear(vector: Float64Array, ...bases: readonly (readonly Float64Array[])[]): number {
-  for (const basis of bases) for (const earlier of basis) subtract(vector, earlier, dot(earlier, vector));
-  return Math.sqrt(sumOfSquares(vector));
+  for (const basis of bases) for (const earlier of basis) subtract(vector, earlier, plainDot(earlier, vector));
+  return Math.sqrt(plainSquares(vector));
 }
 
 function subtract(from: Float64Array, vector: Float64Array, times: number): void {
@@ -78,9 +69,9 @@ function divide(vector: Float64Array, by: number): void {
 
 /** Null for a column of zeros; divided by its largest entry first, so that no square runs over or under. */
 function scaledToUnit(column: Float64Array): Float64Array | null {
-  const largest = column.reduce((most, x) => Math.max(most, Math.abs(x)), 0);
+  const largest = largestOf(column);
   if (largest === 0) return null;
   const vector = column.map((x) => x / largest);
-  divide(vector, Math.sqrt(sumOfSquares(vector)));
+  divide(vector, Math.sqrt(plainSquares(vector)));
   return vector;
 }

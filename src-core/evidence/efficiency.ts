@@ -1,0 +1,29 @@
+import { reflectAll } from '../algebra/householder';
+import { largestOf } from '../algebra/powers-of-two';
+import type { Fitted } from '../estimate/fitted';
+import { exp, log } from '../numbers/elementary';
+import { sum } from '../numbers/sums';
+import { solvedUnder } from './frame';
+
+/**
+ * How efficient equal weights are over all coefficients together, where the fitted structure is true.
+ *
+ *     |X'X|^2 / (|X' Omega X| |X' Omega^-1 X|)
+ *
+ * By the triangles of an orthonormal basis of X under either weighting: units do not enter, and the condition of X costs no digits.
+ * Source: Bloomfield & Watson 1975.
+ */
+export function efficiencyOf(fitted: Fitted): number {
+  const { shape } = fitted;
+  const { basis } = solvedUnder(fitted, new Float64Array(shape.length).fill(1));
+  const largest = largestOf(shape);
+  const roots = shape.map((v) => Math.sqrt(v / largest));
+  const times = logDeterminant(basis.map((q) => q.map((x, g) => x * (roots[g] as number))));
+  const over = logDeterminant(basis.map((q) => q.map((x, g) => x / (roots[g] as number))));
+  return Math.min(1, exp(-2 * (times + over)));
+}
+
+/** ln |det R| of a tall matrix; its columns are overwritten. */
+function logDeterminant(columns: readonly Float64Array[]): number {
+  return sum(reflectAll(columns).triangle.map((column, j) => log(Math.abs(column[j] as number))));
+}
