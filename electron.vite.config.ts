@@ -1,13 +1,17 @@
 import { resolve } from 'node:path';
 import { svelte } from '@sveltejs/vite-plugin-svelte';
 import { defineConfig } from 'electron-vite';
+import { thirdParty } from './third-party.ts';
 
 const at = (path: string) => resolve(import.meta.dirname, path);
+const root = import.meta.dirname;
+const fonts = { 'DejaVu fonts 2.37': at('resources/fonts/LICENSE') };
 const alias = { '@core': at('src-core') };
 
 export default defineConfig({
   main: {
     resolve: { alias },
+    plugins: [thirdParty({ root, along: ['better-sqlite3', 'pdfkit'], texts: fonts })],
     build: {
       outDir: 'out/main',
       externalizeDeps: false,
@@ -21,6 +25,7 @@ export default defineConfig({
   },
   preload: {
     resolve: { alias },
+    plugins: [thirdParty({ root })],
     build: {
       outDir: 'out/preload',
       externalizeDeps: false, // a sandboxed preload is one CJS file that requires `electron` alone
@@ -33,7 +38,7 @@ export default defineConfig({
   renderer: {
     root: at('src-renderer'),
     resolve: { alias },
-    plugins: [svelte({ configFile: at('svelte.config.js') })],
+    plugins: [svelte({ configFile: at('svelte.config.js') }), thirdParty({ root, texts: fonts })],
     build: {
       outDir: at('out/renderer'),
       modulePreload: { polyfill: false },

@@ -1,7 +1,7 @@
 /** What src-main takes of core besides plain shapes and words. The path itself is analyse.ts, for the engine alone. */
 export { checkModel } from './inference/check-model';
 export { readPlan } from './protocol/read';
-export { type EditionFacts, reportOf } from './report/report-of';
+export { type EditionFacts, type NoteFacts, reportOf } from './report/report-of';
 export { type Declarations, declarationsFor, isSetAside, withoutMarks } from './table/declarations';
 export { lookAtCells } from './table/look';
 export { groupMarks, plainNumberIn, trimmed } from './table/number-text';

@@ -1,12 +1,14 @@
-import type { DataLook } from '../protocol/bridge';
+import type { DataLook } from '../protocol/data-look';
 import type { DraftPlan } from '../protocol/draft';
 import type { Figure } from '../protocol/figure';
+import type { Table } from '../protocol/page-table';
 import type { Plan } from '../protocol/plan';
 import { exact } from '../words/numbers';
 import { glanceTexts } from '../words/screen-data';
 import { columnWithUnit, outcomeName } from '../words/units';
 import { COLUMN, INK } from './ink';
 import { openSheet } from './panel';
+import { planeOf } from './plane';
 import { rangeAround } from './ticks';
 
 const HEIGHT = 210;
@@ -43,6 +45,8 @@ export function glance(plan: Plan | DraftPlan, look: DataLook): Figure | null {
     bySize ? (plan.roles.size ?? plan.roles.exposure ?? '') : xName,
   );
   const { overlay: _overlay, series, ...axes } = openSheet({ width: COLUMN, height: HEIGHT }, [panel]);
+  let table: Table | null = null;
+  const plane = planeOf(panel, series.length);
   series.push({
     type: 'scatter',
     xAxisIndex: 0,
@@ -59,13 +63,25 @@ export function glance(plan: Plan | DraftPlan, look: DataLook): Figure | null {
     width: COLUMN,
     height: HEIGHT,
     option: { animation: false, ...axes, series },
-    data: {
-      caption,
-      head: [glanceTexts.cell, xName, yName].map((text, i) => ({ text, align: i === 0 ? 'left' : 'right' })),
-      rows: points.map(({ label, x, y }) => [
-        { value: label, text: label },
-        ...[x, y].map((value) => ({ value, text: exact(value) })),
-      ]),
+    plane,
+    // Written out when it is asked for, once: of many cells it takes longer than the figure.
+    get data() {
+      table ??= tableOf(points, { caption, names: [glanceTexts.cell, xName, yName] });
+      return table;
     },
+  };
+}
+
+function tableOf(
+  points: readonly { readonly label: string; readonly x: number; readonly y: number }[],
+  { caption, names }: { readonly caption: string; readonly names: readonly string[] },
+): Table {
+  return {
+    caption,
+    head: names.map((text, i) => ({ text, align: i === 0 ? 'left' : 'right' })),
+    rows: points.map(({ label, x, y }) => [
+      { value: label, text: label },
+      ...[x, y].map((value) => ({ value, text: exact(value) })),
+    ]),
   };
 }

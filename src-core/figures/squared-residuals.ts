@@ -5,6 +5,7 @@ import { dataTable } from './data-table';
 import { COLUMN, INK, SMALL_SIZE } from './ink';
 import { type Named, nameLines, short } from './key';
 import { type Overlay, openSheet, type Panel, xAt, yAt } from './panel';
+import { planeOf } from './plane';
 import { rangeAround } from './ticks';
 import { type Curve, curveSeries, curvesOf, followsOnly, markOf } from './variance-curves';
 
@@ -47,6 +48,7 @@ export function squaredResiduals(result: Result): Figure | null {
   };
   const size = { width: COLUMN, height: HEIGHT };
   const { overlay, series, ...axes } = openSheet(size, [panel]);
+  const plane = planeOf(panel, series.length);
   const low = squared.filter((value) => value < y.min).length;
   series.push(...pointSeries(points, y.min), ...curves.map(curveSeries));
   drawMeans(overlay, panel, meansOf(result, points));
@@ -67,6 +69,7 @@ export function squaredResiduals(result: Result): Figure | null {
     ),
     ...size,
     option: { animation: false, ...axes, series },
+    plane,
     data: dataOf(result, points, curves),
   };
 }

@@ -1,10 +1,11 @@
 import * as v from 'valibot';
 import type { Command } from './commands';
+import type { PackedLook } from './data-look';
 import type { ReportDocument } from './document';
 import { done, type Outcome, refuse } from './outcome';
 import type { Encoding, Plan, Read, Status } from './plan';
 import type { JsonType, Problem } from './problems';
-import type { OmissionCode, Result } from './result';
+import type { Result } from './result';
 
 const number = v.pipe(v.number(), v.safeInteger());
 const sha256 = v.pipe(v.string(), v.regex(/^[0-9a-f]{64}$/));
@@ -44,7 +45,7 @@ const asks = {
   'answer.cover': v.strictObject({ author }),
   'answer.uncover': v.strictObject({ author }),
   'report.pages': v.strictObject({ planId: number, edition: v.nullable(number) }),
-  'report.note': v.strictObject({ place: v.string(), text: v.nullable(v.string()) }),
+  'report.note': v.strictObject({ place: v.string(), text: v.nullable(v.string()), author }),
   'report.decide': v.strictObject({ author, text: v.pipe(v.string(), v.minLength(1)) }),
   'report.freeze': v.strictObject({ planId: number, author }),
   'report.sign-off': v.strictObject({ edition: number, role: v.pipe(v.string(), v.minLength(1)), author }),
@@ -87,7 +88,13 @@ export interface ProjectLook {
   readonly covered: boolean;
   readonly uncovered: { readonly author: string; readonly time: string } | null;
   readonly decisions: readonly { readonly author: string; readonly time: string; readonly text: string }[];
-  readonly notes: readonly { readonly place: string; readonly text: string }[];
+  /** author: null where a note was kept before authors were asked for. */
+  readonly notes: readonly {
+    readonly place: string;
+    readonly text: string;
+    readonly author: string | null;
+    readonly time: string;
+  }[];
   readonly editions: readonly {
     readonly number: number;
     readonly time: string;
@@ -122,27 +129,6 @@ export interface PreviewColumn {
   readonly tokens: readonly { readonly token: string; readonly rows: number; readonly status: Status | null }[];
   /** The first texts, at most 100. */
   readonly texts: readonly string[];
-}
-
-/** The cells of a plan before any fit: what is used, what is not and why. One entry a data row left after joining. */
-export interface DataLook {
-  readonly columns: readonly string[];
-  readonly rows: readonly CellLook[];
-  readonly used: number;
-  readonly files: readonly { readonly name: string; readonly sha256: string }[];
-  readonly unmatched: Result['data']['unmatched'];
-}
-
-export interface CellLook {
-  /** Data row from 1. */
-  readonly row: number;
-  readonly label: string;
-  /** Of each label column. */
-  readonly key: readonly string[];
-  readonly outcome: number | null;
-  readonly size: number | null;
-  readonly error: number | null;
-  readonly reason: { readonly code: OmissionCode; readonly column: string; readonly text: string } | null;
 }
 
 export interface DataComparison {
@@ -192,7 +178,7 @@ export interface Answers {
   'data.choose': DataPreview | null;
   'data.take': DataPreview;
   'data.preview': DataPreview;
-  'data.look': DataLook;
+  'data.look': PackedLook;
   'data.compare': DataComparison;
   'plan.add': { readonly planId: number; readonly job: number; readonly project: ProjectLook };
   'plan.change': { readonly job: number; readonly project: ProjectLook };
@@ -202,7 +188,8 @@ export interface Answers {
   'draft.keep': ProjectLook;
   'fit.ask': { readonly job: number };
   'fit.try': { readonly job: number };
-  'fit.latest': { readonly result: Result | null; readonly before: Result | null };
+  /** Results as the text that is kept: of many cells it crosses between processes far sooner than the value. */
+  'fit.latest': { readonly result: string | null; readonly before: string | null };
   'job.cancel': null;
   'answer.cover': ProjectLook;
   'answer.uncover': ProjectLook;
@@ -226,16 +213,50 @@ export type Told =
       readonly job: number;
       /** null for a plan that was tried and not kept. */
       readonly planId: number | null;
-      readonly outcome: Outcome<Result>;
+      /** The result as the text that is kept. */
+      readonly outcome: Outcome<string>;
       /** Why the result, which is shown all the same, could not be kept in the project; absent where it was kept or need not be. */
       readonly unkept?: readonly Problem[];
     }
+  /** A question that may take long is being answered: it can be stopped by the job's number, as a fit can. */
+  | { readonly kind: 'begun'; readonly job: number; readonly question: Asked }
+  /** Its answer is on its way. */
+  | { readonly kind: 'ended'; readonly job: number }
+  /** What has become of the open project's file (`project-gone`, `project-replaced`, `project-overwritten`); empty once it is back. */
+  | { readonly kind: 'file'; readonly problems: readonly Problem[] }
   /** The menu was used: the page does what its own control for it does. */
   | { readonly kind: 'command'; readonly command: Command }
   /** A project named on the command line or opened from the desktop: the page may ask for it by 'project.open'. */
   | { readonly kind: 'offered'; readonly file: string }
   /** The window is about to close: what is not yet kept (a draft) is sent now. */
   | { readonly kind: 'leaving' };
+
+type ToldDone = Extract<Told, { kind: 'done' }>;
+
+/** What a job ended with, its result read. */
+export type HeardDone = Omit<ToldDone, 'outcome'> & { readonly outcome: Outcome<Result> };
+
+/** What main told, as the page takes it in. */
+export type Heard = Exclude<Told, ToldDone> | HeardDone;
+
+export function heardOf(told: Told): Heard {
+  return told.kind === 'done' ? { ...told, outcome: readResult(told.outcome) } : told;
+}
+
+/** The latest fit and the one before it, read. */
+export interface LatestFit {
+  readonly result: Result | null;
+  readonly before: Result | null;
+}
+
+export function readLatest({ result, before }: Answers['fit.latest']): LatestFit {
+  const read = (text: string | null) => (text === null ? null : (JSON.parse(text) as Result));
+  return { result: read(result), before: read(before) };
+}
+
+function readResult(outcome: Outcome<string>): Outcome<Result> {
+  return outcome.ok ? done(JSON.parse(outcome.value) as Result) : outcome;
+}
 
 export type Asked = keyof typeof asks & keyof Answers;
 export type Ask<Q extends Asked> = v.InferOutput<(typeof asks)[Q]>;

@@ -101,6 +101,11 @@ function without(roles: Roles, column: string): Roles {
   return cleared;
 }
 
+/** Whether the outcome is a proportion, of which a logit can be taken: a share, a percentage, or a count over a size. */
+export function canBeLogit({ outcome, outcomeUnit, count, exposure }: Roles): boolean {
+  return (outcome !== null && outcomeUnit !== 'number') || (count !== null && exposure === null);
+}
+
 /** How a plan lets a column explain the outcome by itself; its products are left out of account. */
 export function useOf({ terms }: Pick<AnyPlan, 'terms'>, column: string): Use {
   const term = terms.find((one) => !('product' in one) && one.column === column);
@@ -161,7 +166,8 @@ const single: ReadonlySet<ColumnRole> = new Set([
  * Proposes what each column is, by its name and its values; nothing is decided.
  *
  * Texts and years name the cells, blank columns nothing; each of outcome, size, error and so on goes to the first column whose name says so, size without such a name to the
- * only column of positive whole numbers; a number that nothing else claims explains the outcome.
+ * only column of positive whole numbers; a number that nothing else claims explains the outcome, as a category where it takes few whole values:
+ * such a number may be a code or a count, and names no cell unless that is said.
  *
  * Example: parish, year, carers, mean_hours, distance_km are label, label, size, mean, and a term.
  */
@@ -172,17 +178,18 @@ export function proposeRoles(columns: readonly PreviewColumn[]): readonly RolePr
   for (const one of columns) {
     if (one.distinct === 0) put(one.name, 'other', 'blank');
     else if (hasYears(one)) put(one.name, 'label', 'year-names-cells');
-    else if (!holdsNumbers(one)) put(one.name, 'label', 'texts-name-cells');
+    else if (!holdsNumbers(one) && !holdsCodes(one)) put(one.name, 'label', 'texts-name-cells');
   }
   byNames(columns, named, put);
   const rest = columns.filter(({ name }) => !named.has(name));
   const roles = new Set([...named.values()].map(({ role }) => role));
   if (!roles.has('size') && !roles.has('effective-size')) {
-    const whole = rest.filter(holdsCounts);
+    const whole = rest.filter((one) => holdsCounts(one) && !holdsCodes(one));
     const [only] = whole;
     if (only && whole.length === 1) put(only.name, 'size', 'only-whole-numbers');
   }
-  for (const { name } of rest) if (!named.has(name)) put(name, 'other', 'left-over', 'number');
+  for (const one of rest)
+    if (!named.has(one.name)) put(one.name, 'other', 'left-over', holdsCodes(one) ? 'category' : 'number');
   return columns.map(({ name }) => named.get(name) as RoleProposal);
 }
 
@@ -241,6 +248,11 @@ export function holdsNumbers(column: PreviewColumn): boolean {
     /^[+\-\u2212]?\d[\d.,' \u00a0\u202f]*(e[+-]?\d+)?\s*[^\d\s]{0,3}$/iu.test(text),
   );
   return texts.length > 0 && 2 * numbers.length >= texts.length;
+}
+
+/** A number that takes few whole values: a code, or a count. */
+function holdsCodes({ reason }: PreviewColumn): boolean {
+  return reason === 'few-whole-numbers';
 }
 
 function hasYears(column: PreviewColumn): boolean {

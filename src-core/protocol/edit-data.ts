@@ -1,5 +1,6 @@
 import type { DraftPlan } from './draft';
-import type { DataPlan, Derive, Join, Omit, Plan, Read, Status } from './plan';
+import type { DataPlan, Derive, Join, Limit, Omit, OutcomeScale, Plan, Read, Status } from './plan';
+import { defaultAddedHalf } from './plan-defaults';
 import { stepsOf } from './pointer';
 
 type AnyPlan = Plan | DraftPlan;
@@ -99,6 +100,18 @@ export function withOmission<P extends AnyPlan>(plan: P, omission: Omit): P {
 /** A plan without one of its joins, derived columns or rules. */
 export function withoutStep<P extends AnyPlan>(plan: P, list: 'join' | 'derive' | 'omit', at: number): P {
   return withData(plan, { [list]: plan.data[list].filter((_, i) => i !== at) });
+}
+
+/** A plan with what is known of a column's rounded or suppressed values; null: they are taken as they stand. */
+export function withLimit<P extends AnyPlan>(plan: P, column: string, limit: Limit | null): P {
+  const { [column]: _old, ...limits } = plan.data.limits;
+  return withData(plan, { limits: limit === null ? limits : { ...limits, [column]: limit } });
+}
+
+/** A plan with its outcome on another scale; what is added to extreme shares belongs to the logit, and is settled anew. */
+export function withScale<P extends AnyPlan>(plan: P, outcomeScale: OutcomeScale): P {
+  const addedHalf = plan.estimate === null ? null : defaultAddedHalf(outcomeScale, plan.estimate);
+  return { ...plan, outcomeScale, addedHalf };
 }
 
 /** A plan with a unit stated for a column, or taken back where the text is empty. */

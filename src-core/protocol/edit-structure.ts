@@ -1,6 +1,6 @@
 import { isSamplingAndBetween, methodsFor, sameVariance, varianceOfRival } from './offered-parts';
 import { isSampling, means, namedParameters } from './parameter-names';
-import type { Estimate, Inference, Part, Plan, Rival, Target, Variance } from './plan';
+import type { Estimate, Inference, Part, Plan, Rival, Roles, Target, Variance } from './plan';
 import { defaultAddedHalf, defaultEstimate } from './plan-defaults';
 
 /** What else had to change so that the plan stays whole; told beside the change, never done in silence. */
@@ -70,6 +70,22 @@ function letGo({ parts, fixed }: Variance): Variance {
   const parameters = namedParameters({ parts });
   const kept = Object.entries(fixed).filter(([name]) => parameters.some((one) => means(name, one)));
   return { parts, fixed: Object.fromEntries(kept) };
+}
+
+/**
+ * What stands beside a structure that is stated for the first time, so that it can be priced: the rivals that a draft names already, the structure
+ * that the draft held before; where there is none, equal weights, or those by size.
+ */
+export function besideAtFirst(
+  { variance, beside, roles }: { variance: Variance | null; beside: readonly Rival[]; roles: Roles },
+  stated: Variance,
+): Rival[] {
+  const former: Rival[] = variance === null || stands(beside, variance) ? [] : [asRival(variance)];
+  const plain: Rival[] = ['constant', ...(roles.size === null ? [] : (['per-size'] as const))];
+  const others = [...former, ...beside].filter(
+    (rival, i, all) => !sameVariance(rival, stated) && all.findIndex((one) => sameVariance(one, rival)) === i,
+  );
+  return others.length > 0 ? others : plain.filter((rival) => !sameVariance(rival, stated)).slice(0, 1);
 }
 
 /** Puts a rival beside the stated structure; one that stands already is not put there twice. */

@@ -15,6 +15,22 @@ export interface Figure {
   readonly option: FigureOption;
   /** The numbers drawn. */
   readonly data: Table;
+  /** Its one pair of axes, of which the window may show a part. */
+  readonly plane?: FigurePlane;
+}
+
+/** One pair of axes, in points from the figure's top left corner. */
+export interface FigurePlane {
+  readonly left: number;
+  readonly top: number;
+  readonly width: number;
+  readonly height: number;
+  readonly x: { readonly min: number; readonly max: number; readonly log: boolean };
+  readonly y: { readonly min: number; readonly max: number; readonly log: boolean };
+  readonly xName?: string;
+  readonly yName?: string;
+  /** So many of the first series draw the axes. */
+  readonly axes: number;
 }
 
 export interface FigureOption {

@@ -1,26 +1,47 @@
 import { onlyScaleUnknown } from './parameter-names';
-import type { Inference, Part, PartKind, Plan, Rival, Roles, Variance } from './plan';
+import type { Correlation, Inference, Part, PartKind, Plan, Rival, Roles, Variance } from './plan';
 
-/** The parts that this version fits. The rest of the contract is told by name and refused by the fit. */
-const fitted: ReadonlySet<PartKind> = new Set(['constant', 'per-size', 'given', 'size-power', 'proxy', 'between']);
-const laterInference: ReadonlySet<Inference['kind']> = new Set(['kenward-roger', 'clustered', 'wild']);
+/**
+ * What the contract holds and this version does not fit yet, by name: the one list of it. Controls offer all of the contract and say what is on
+ * the list; the fit refuses it by the same names.
+ */
+const later = {
+  parts: new Set<PartKind>(['matrix', 'log-linear', 'per-class', 'binomial', 'counts', 'shared']),
+  correlations: new Set<Correlation['kind']>(['exchangeable', 'serial']),
+  inferences: new Set<Inference['kind']>(['kenward-roger', 'clustered', 'wild']),
+  keys: new Set<LaterKey>(['limits', 'sizeWithin', 'withinSd', 'logit', 'disclosure']),
+} as const;
+
+/** What can be missing besides parts, correlations and inferences. */
+export type LaterKey = 'limits' | 'sizeWithin' | 'withinSd' | 'logit' | 'disclosure';
 
 /** Whether this version fits parts of a kind. */
 export function isOffered(kind: PartKind): boolean {
-  return fitted.has(kind);
+  return !later.parts.has(kind);
+}
+
+/** Whether this version fits parts that are correlated in this way. */
+export function isOfferedCorrelation(kind: Correlation['kind']): boolean {
+  return !later.correlations.has(kind);
+}
+
+/** Whether this version does what a key of the plan asks for. */
+export function isOfferedKey(key: LaterKey): boolean {
+  return !later.keys.has(key);
 }
 
 /** What a structure holds that this version does not fit, by name: kinds of parts, kinds of correlation. */
 export function lackingIn({ parts }: Pick<Variance, 'parts'>): string[] {
   return parts.flatMap((part) => {
     if (!isOffered(part.kind)) return [part.kind];
-    return 'correlation' in part && part.correlation !== null ? [part.correlation.kind] : [];
+    if (!('correlation' in part) || part.correlation === null) return [];
+    return isOfferedCorrelation(part.correlation.kind) ? [] : [part.correlation.kind];
   });
 }
 
 /** Whether this version has this kind of inference. */
 export function isOfferedInference(kind: Inference['kind']): boolean {
-  return !laterInference.has(kind);
+  return !later.inferences.has(kind);
 }
 
 /** A rival's word as the structure that it stands for; a structure is itself. */

@@ -136,6 +136,20 @@ export interface Troubles {
   };
   'no-edition': { readonly file: string };
   'no-project': { readonly file: string };
+  /** Something was asked of a project while none is open. */
+  'nothing-open': Record<string, never>;
+  /** A project stands where a table should be read. */
+  'is-a-project': {
+    readonly file: string;
+    /** It can be opened by this name; else it has to be chosen. */
+    readonly offered: boolean;
+  };
+  /** The open project's file was removed or moved. */
+  'project-gone': { readonly file: string };
+  /** Another file stands under the open project's name; the project itself lives on as long as it is open. */
+  'project-replaced': { readonly file: string };
+  /** The open project's own file was written by another program. */
+  'project-overwritten': { readonly file: string };
   /** A file stands under the name of one that is to be made. */
   'already-there': { readonly file: string };
   'unknown-plan': { readonly found: number };
@@ -149,6 +163,17 @@ export interface Troubles {
   'cannot-read': { readonly file: string; readonly reason: string };
   /** A folder stands where a file should go, or the other way round. */
   'in-the-way': { readonly file: string; readonly wanted: 'file' | 'folder' };
+  /** size, limit: in bytes. */
+  'file-too-large': { readonly file: string; readonly size: number; readonly limit: number };
+  /** A table of more rows or fields than is read into memory; counted before it is read, and roughly. */
+  'table-too-large': {
+    readonly file: string;
+    readonly of: 'rows' | 'fields';
+    readonly found: number;
+    readonly limit: number;
+  };
+  /** Reading a table, or working on it, took all the memory that it may have. */
+  'memory-full': { readonly file: string };
   cancelled: Record<string, never>;
   'fault-of-ours': { readonly message: string };
   // the window
@@ -230,6 +255,11 @@ const exits: { readonly [C in Code]: ExitStatus } = {
   'edition-differs': 5,
   'no-edition': 3,
   'no-project': 3,
+  'nothing-open': 3,
+  'is-a-project': 3,
+  'project-gone': 6,
+  'project-replaced': 6,
+  'project-overwritten': 6,
   'already-there': 3,
   'unknown-plan': 3,
   'name-taken': 3,
@@ -240,6 +270,9 @@ const exits: { readonly [C in Code]: ExitStatus } = {
   'cannot-write': 6,
   'cannot-read': 6,
   'in-the-way': 6,
+  'file-too-large': 3,
+  'table-too-large': 3,
+  'memory-full': 6,
   cancelled: 130,
   'fault-of-ours': 1,
   stranger: 1,

@@ -8,8 +8,20 @@ export interface EditionFacts {
   readonly head: string;
   readonly project?: string | null;
   readonly decisions?: readonly Decision[];
+  /** Absent where there are none, as in editions that were frozen before notes were printed. */
+  readonly notes?: readonly NoteFacts[];
   /** Structures tried, by the project's trail; null where no trail counts them. */
   readonly structuresTried?: { readonly count: number } | null;
+}
+
+/** What an author adds to one section of the report. */
+export interface NoteFacts {
+  /** Key of a heading in words/headings, `page-one`, or the heading's own text. */
+  readonly place: string;
+  readonly text: string;
+  /** null where it is not on record. */
+  readonly author: string | null;
+  readonly time: string;
 }
 
 export interface Decision {

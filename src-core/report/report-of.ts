@@ -7,14 +7,15 @@ import { cellsAppendix } from './cells';
 import { cautionBlocks, checkBlocks, methodBlocks, recordBlocks, standingBlocks } from './closing';
 import { coefficientBlocks, fitBlocks, robustBlocks } from './coefficients';
 import { dataBlocks, omittedAppendix } from './data';
-import type { EditionFacts } from './edition-facts';
+import type { EditionFacts, NoteFacts } from './edition-facts';
 import { evidenceAppendix, evidenceBlocks } from './evidence';
 import { influenceBlocks, overturnBlocks } from './influence';
+import { withNotes } from './notes';
 import { questionBlocks } from './questions';
 import { statementBlocks } from './statement';
 import { summaryBlocks } from './summary';
 
-export type { Decision, EditionFacts } from './edition-facts';
+export type { Decision, EditionFacts, NoteFacts } from './edition-facts';
 
 /** A section with the key of the result that it tells: a plan that leaves out the key leaves out the section. */
 type Section = readonly [key: keyof Result | null, blocks: () => Block[]];
@@ -22,15 +23,17 @@ type Section = readonly [key: keyof Result | null, blocks: () => Block[]];
 /**
  * The report of a result as plain data: page one with the answer, the variance statement as an argument, then the rest, the full batteries in appendices.
  *
- * edition: what is known of the edition that it belongs to; null for a run. plan.report.omit leaves out the sections of the result's keys that it
+ * edition: what is known of the edition that it belongs to; null for a run. notes: set under the headings that they belong to; an edition's own if left out. plan.report.omit leaves out the sections of the result's keys that it
  * names; page one and the statement stand in any case. Undefined quantities are dashes with the caution that says why.
  */
 export function reportOf({
   result,
   edition,
+  notes = edition?.notes ?? [],
 }: {
   readonly result: Result;
   readonly edition: EditionFacts | null;
+  readonly notes?: readonly NoteFacts[];
 }): ReportDocument {
   const { plan, made } = result;
   const left = new Set(plan.report.omit);
@@ -50,7 +53,7 @@ export function reportOf({
     author: edition?.author ?? plan.about?.analyst ?? null,
     paper: plan.report.paper,
     foot: { left: footLeft(plan.title), right: footRight(edition, made.version), pageOf: pagePattern },
-    blocks: [
+    blocks: withNotes(notes, [
       ...summaryBlocks(result, edition),
       ...statementBlocks(result, tried),
       ...kept([
@@ -74,6 +77,6 @@ export function reportOf({
         [null, () => standingBlocks()],
       ]),
       ...appendices,
-    ],
+    ]),
   };
 }

@@ -1,12 +1,12 @@
-import type { CellLook, DataLook } from '../protocol/bridge';
+import type { CellLook, DataLook } from '../protocol/data-look';
 import { done, type Outcome } from '../protocol/outcome';
 import type { Plan } from '../protocol/plan';
 import type { Omitted } from '../protocol/result';
-import { assemble, type PlanWithSources } from './assemble';
+import type { PlanWithSources } from './assemble';
 import type { Frame } from './frame';
 import { labelsOf } from './labels';
-import { prepareCells } from './prepare-cells';
-import { doublesOf, roleColumns, roleValues } from './roles';
+import { prepareRows } from './prepare-cells';
+import { doublesOf, type RoleValues } from './roles';
 
 /**
  * Every data row of a plan before any fit: its label, what its roles say, and why it is left out if it is.
@@ -16,26 +16,30 @@ import { doublesOf, roleColumns, roleValues } from './roles';
  * Example: a row of size 0 stands in its place with the reason `not-above-zero`.
  */
 export function lookAtCells(of: PlanWithSources): Outcome<DataLook> {
-  const cells = prepareCells(of);
-  if (!cells.ok) return cells;
-  const assembled = assemble(of);
-  if (!assembled.ok) return assembled;
-  const { columns, data } = cells.value;
+  const prepared = prepareRows(of);
+  if (!prepared.ok) return prepared;
+  const { frame, values } = prepared.value;
+  const { columns, data } = prepared.value.cells;
   return done({
     columns,
-    rows: rowsOf(of.plan, assembled.value.frame, data.omitted),
+    rows: rowsOf(of.plan, { frame, values, omitted: data.omitted }),
     used: data.used,
     files: data.files,
     unmatched: data.unmatched,
   });
 }
 
-function rowsOf(plan: Plan, frame: Frame, omitted: readonly Omitted[]): readonly CellLook[] {
-  const { roles } = plan;
+function rowsOf(
+  { roles }: Plan,
+  {
+    frame,
+    values,
+    omitted,
+  }: { readonly frame: Frame; readonly values: RoleValues; readonly omitted: readonly Omitted[] },
+): readonly CellLook[] {
   const keys = (roles.label ?? []).flatMap((name) => frame.holder(name) ?? []);
   const labels = labelsOf(frame.rows, keys);
   const all = Array.from({ length: frame.rows }, (_, row) => row);
-  const values = roleValues(plan, { columns: roleColumns(frame, roles), rows: frame.rows });
   const [outcome, size, error] = [values.outcome, values.size, values.error].map((column) => doublesOf(column, all));
   const reasons = new Map(omitted.map(({ row, reason }) => [row, reason]));
   return all.map((row) => ({

@@ -1,3 +1,4 @@
+import { unsaidRead } from '../protocol/draft';
 import type { Part, Plan, Read, Variance } from '../protocol/plan';
 import { below } from '../protocol/pointer';
 
@@ -11,16 +12,6 @@ export interface PlanFile {
   readonly read: Read;
 }
 
-const asFound: Read = {
-  encoding: null,
-  delimiter: null,
-  decimal: null,
-  group: null,
-  statuses: {},
-  missing: {},
-  footnotes: [],
-};
-
 /**
  * The files that a plan names, each once for each way of reading it, in the order of the plan: its own, joined ones, matrices, the neighbour list.
  *
@@ -30,10 +21,10 @@ export function filesOf(plan: Plan): readonly PlanFile[] {
   const named: Omit<PlanFile, 'key'>[] = [
     { file: plan.data.file, at: '/data/file', read: plan.data.read },
     ...plan.data.join.map(({ file, read }, i) => ({ file, at: `/data/join/${i}/file`, read })),
-    ...matricesOf(plan).map(({ part, at }) => ({ file: part.file, at: `${at}/file`, read: asFound })),
+    ...matricesOf(plan).map(({ part, at }) => ({ file: part.file, at: `${at}/file`, read: unsaidRead })),
   ];
   const neighbours = plan.tests?.neighbours ?? null;
-  if (neighbours !== null) named.push({ file: neighbours, at: '/tests/neighbours', read: asFound });
+  if (neighbours !== null) named.push({ file: neighbours, at: '/tests/neighbours', read: unsaidRead });
   const seen = new Map<string, PlanFile>();
   const files = new Map<string, number>();
   for (const one of named) {
@@ -47,7 +38,7 @@ export function filesOf(plan: Plan): readonly PlanFile[] {
 }
 
 /** The key under which the table of one place stands. */
-export function keyOf(plan: Plan, file: string, read: Read = asFound): string {
+export function keyOf(plan: Plan, file: string, read: Read = unsaidRead): string {
   const way = JSON.stringify([file, read]);
   return filesOf(plan).find((one) => JSON.stringify([one.file, one.read]) === way)?.key ?? file;
 }

@@ -26,6 +26,14 @@ import { noteStructureFaults } from './structure-checks';
  * Example: a row of size 0 is among `data.omitted` with `not-above-zero`; the others are the cells.
  */
 export function prepareCells(of: PlanWithSources): Outcome<Cells> {
+  const prepared = prepareRows(of);
+  return prepared.ok ? done(prepared.value.cells) : prepared;
+}
+
+/** The same, with the frame that the cells were taken from and what the roles say of every row of it. */
+export function prepareRows(
+  of: PlanWithSources,
+): Outcome<{ readonly cells: Cells; readonly frame: Frame; readonly values: RoleValues }> {
   const assembled = assemble(of);
   if (!assembled.ok) return assembled;
   const { plan } = of;
@@ -38,7 +46,8 @@ export function prepareCells(of: PlanWithSources): Outcome<Cells> {
   if (used.length === 0 && frame.complete)
     frame.problems.push(problem('no-cells-left', { rows: frame.rows, reasons }, '/data'));
   if (frame.problems.length > 0) return refuseAll(frame.problems);
-  return done(cellsOf({ plan, assembled: assembled.value, neighbours, ...checked }));
+  const cells = cellsOf({ plan, assembled: assembled.value, neighbours, ...checked });
+  return done({ cells, frame, values: checked.values });
 }
 
 interface Checked {

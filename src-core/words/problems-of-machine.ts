@@ -1,5 +1,5 @@
 import { findingPhrase } from './findings';
-import { count, quoted } from './numbers';
+import { count, plural, quoted } from './numbers';
 import { meant, type Sentences } from './phrases';
 
 type MachineCode =
@@ -14,6 +14,11 @@ type MachineCode =
   | 'edition-differs'
   | 'no-edition'
   | 'no-project'
+  | 'nothing-open'
+  | 'is-a-project'
+  | 'project-gone'
+  | 'project-replaced'
+  | 'project-overwritten'
   | 'already-there'
   | 'unknown-plan'
   | 'name-taken'
@@ -24,9 +29,15 @@ type MachineCode =
   | 'cannot-write'
   | 'cannot-read'
   | 'in-the-way'
+  | 'file-too-large'
+  | 'table-too-large'
+  | 'memory-full'
   | 'cancelled'
   | 'fault-of-ours'
   | 'stranger';
+
+/** Sizes of files, from bytes. */
+const megabytes = (bytes: number) => plural(Math.ceil(bytes / 1e6), 'megabyte');
 
 /** What went wrong around a fit: the call, the project file, the machine. */
 export const machineSentences: Sentences<MachineCode> = {
@@ -48,6 +59,15 @@ export const machineSentences: Sentences<MachineCode> = {
     `Edition ${edition} does not rebuild: ${what} is ${found}, and was ${expected} when it was frozen.`,
   'no-edition': ({ file }) => `${quoted(file)} holds no such edition. Freeze one first.`,
   'no-project': ({ file }) => `There is no project ${quoted(file)}. Check the name and the folder.`,
+  'nothing-open': () => 'No project is open. Open one, or make a new one, first.',
+  'is-a-project': ({ file, offered }) =>
+    `${quoted(file)} is a project of this program, and not a table. ${offered ? 'Open it' : 'Choose it'} as a project.`,
+  'project-gone': ({ file }) =>
+    `${quoted(file)} was removed or moved while it was open. What is on the screen is still whole: save a copy under another name, or put the file back.`,
+  'project-replaced': ({ file }) =>
+    `Another file was put in the place of ${quoted(file)} while it was open; it is left alone. What is on the screen is still whole: save a copy under another name.`,
+  'project-overwritten': ({ file }) =>
+    `Another program wrote over ${quoted(file)} while it was open, so nothing more is written to it. Save what the screen still shows, close the project, and go back to a copy.`,
   'already-there': ({ file }) => `There is already a file ${quoted(file)}. Move it away, or choose another name.`,
   'unknown-plan': ({ found }) => `The project holds no plan number ${found} any more. Choose one of those it lists.`,
   'name-taken': ({ name }) => `Another plan of this project is called ${quoted(name)}. Choose another name.`,
@@ -61,6 +81,12 @@ export const machineSentences: Sentences<MachineCode> = {
   'cannot-read': ({ file, reason }) => `${quoted(file)} could not be read (${reason}).`,
   'in-the-way': ({ file, wanted }) =>
     `A ${wanted === 'file' ? 'folder' : 'file'} called ${quoted(file)} stands where a ${wanted} should go. Move it, or choose another name.`,
+  'file-too-large': ({ file, size, limit }) =>
+    `${quoted(file)} has ${megabytes(size)}, and files up to ${megabytes(limit)} are read here. Keep the rows and columns that the cells need.`,
+  'table-too-large': ({ file, of, found, limit }) =>
+    `${quoted(file)} has some ${count(found)} ${of}, and tables up to ${count(limit)} ${of} are read here. Keep the rows and columns that the cells need.`,
+  'memory-full': ({ file }) =>
+    `The table of ${quoted(file)} does not fit into memory. Keep the rows and columns that the cells need.`,
   cancelled: () => 'Stopped at your request. Nothing was written.',
   'fault-of-ours': ({ message }) =>
     `This program made a mistake (${message}). Nothing of yours is wrong; please report the sentence in brackets.`,

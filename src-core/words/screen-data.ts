@@ -1,5 +1,6 @@
-import type { CellLook, DataComparison, DataLook, DataPreview } from '../protocol/bridge';
+import type { DataComparison, DataPreview } from '../protocol/bridge';
 import { holdsNumbers } from '../protocol/column-roles';
+import type { CellLook, DataLook } from '../protocol/data-look';
 import type { Derive, Encoding, Read, Status } from '../protocol/plan';
 import { count, exact, list, listSome, plural, quoted } from './numbers';
 
@@ -68,6 +69,8 @@ export const dataTexts = {
   set: 'Set',
   outcomeMissing: 'Say which column is the outcome: then the cells can be counted here.',
   looking: 'Looking at the rows …',
+  stopped: 'Stopped before the rows were looked at.',
+  lookAgain: 'Look at them',
 } as const;
 
 const encodings: { readonly [E in Encoding]: string } = {

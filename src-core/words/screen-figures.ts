@@ -7,5 +7,9 @@ export const figureTexts = {
   copied: 'Copied',
   saved: 'Saved',
   help: 'T shows the numbers as a table; the arrow keys walk along the cells.',
-  largeHelp: 'Turn the wheel to come nearer, drag to move.',
+  largeHelp:
+    'Plus and minus, or Control and the wheel, come nearer and go further; drag, click a place or press Shift and an arrow to move; 0 shows all again.',
+  nearer: 'Nearer',
+  further: 'Further',
+  all: 'Show all',
 } as const;

@@ -11,6 +11,8 @@ export const reportTexts = {
   covered:
     'The answer is covered, and the pages show it: they are not shown before it is uncovered. That is done under Variance, and goes on record.',
   setting: 'The pages are being set …',
+  stopped: 'Stopped before the pages were set.',
+  setAgain: 'Set them',
   noPages:
     'There are no pages to show: the plan could not be fitted. What stands in the way is told at the head of this page.',
   drawTrouble: 'The pages could not be drawn here. They can be saved as PDF all the same, and read as text.',
@@ -40,6 +42,7 @@ export const reportTexts = {
   // notes
   note: 'Note on this section',
   noteKeep: 'Keep the note',
+  notePrints: 'It prints under the heading of the section, with author and time.',
   noteDrop: 'Take the note out',
   noteSays: 'Can be undone; the trail keeps every wording.',
   noteFrozen: 'Notes are written on the report as it stands now.',
@@ -181,22 +184,6 @@ export function frozenText({ number, head }: { readonly number: number; readonly
 /** Under which name the pages are saved, without ending. */
 export function reportFileName(project: string, edition: number | null): string {
   return edition === null ? `${project} report` : `${project} edition ${count(edition)}`;
-}
-
-/** Places at which a note can stand: the sections of the report, by keys that outlast their wording. */
-const places: ReadonlyMap<string, string> = new Map(
-  Object.entries(headings).map(([place, text]) => [text as string, place]),
-);
-
-/** The place of a heading, as notes name it: page one for the title, which may change; a section that is not known is its own. */
-export function placeOf({ title, level }: { readonly title: string; readonly level: number }): string {
-  return places.get(title) ?? (level === 1 ? 'page-one' : title);
-}
-
-/** The heading of a note's place. */
-export function headingOfPlace(place: string): string {
-  if (place === 'page-one') return 'Page one';
-  return Object.hasOwn(headings, place) ? headings[place as keyof typeof headings] : place;
 }
 
 /** Names of undo steps made here; codes of words/screen-shell. */

@@ -28,6 +28,8 @@ export const shellTexts = {
   saveCopy: 'Save a copy as …',
   closeProject: 'Close the project',
   kept: 'Every accepted change is in the file already; there is nothing to save.',
+  openThat: 'Open it as a project',
+  openOther: 'Open a project …',
   trouble: 'This needs your attention',
   emptyPlace: 'Nothing to show here yet.',
   needsData: 'There are no data yet. Bring a table in under Data first.',
@@ -56,6 +58,7 @@ const actions: ReadonlyMap<string, string> = new Map([
   ['change-derived', 'a derived column'],
   ['change-omissions', 'a rule of omission'],
   ['change-title', 'the title'],
+  ['change-plan', 'the plan'],
   ['replace-data', 'the data replaced'],
   ['accept-data', 'the data accepted'],
   ['change-variance', 'the variance'],
@@ -65,6 +68,11 @@ const actions: ReadonlyMap<string, string> = new Map([
   ['change-inference', 'the kind of error'],
   ['change-estimate', 'the method'],
   ['change-report', 'the report’s settings'],
+  ['change-matters', 'the smallest difference that matters'],
+  ['change-target', 'what the weights aim at'],
+  ['change-scale', 'the scale of the outcome'],
+  ['change-tests', 'what the tests look at'],
+  ['change-limits', 'what is known of rounded or suppressed values'],
 ]);
 
 /** An action by its code; one that this version does not know is told as it stands. */
@@ -78,6 +86,16 @@ const steps: ReadonlyMap<string, string> = new Map([
   ['evidence', 'Testing the structure'],
   ['sensitivity', 'Trying what could overturn it'],
   ['report', 'Setting the pages'],
+  ['look', 'Looking at the rows'],
+  ['compare', 'Comparing the cells'],
+  ['data.choose', 'Reading the file'],
+  ['data.take', 'Reading the file'],
+  ['data.preview', 'Reading the file'],
+  ['data.look', 'Looking at the rows'],
+  ['data.compare', 'Comparing the cells'],
+  ['report.pages', 'Setting the pages'],
+  ['report.freeze', 'Freezing the edition'],
+  ['report.check', 'Making the edition again'],
 ]);
 
 /** What a job is doing, with how far it has come: "Fitting, 40 %". */

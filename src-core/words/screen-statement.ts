@@ -2,6 +2,8 @@ import type { DraftPlan } from '../protocol/draft';
 import { isSampling } from '../protocol/parameter-names';
 import type { Part, Plan, Variance } from '../protocol/plan';
 import type { Result } from '../protocol/result';
+import { termName } from '../protocol/term-names';
+import { list } from './numbers';
 import { outcomeNoun, varianceSentence } from './statement';
 
 /** A piece of the statement. governs: which choices it opens; null for the words between. */
@@ -79,8 +81,19 @@ function unfittedPhrase(part: Part, { roles }: Plan): string {
       return `φ divided by ${size} to the power ${part.exponent === 'estimate' ? 'δ' : part.exponent}`;
     case 'proxy':
       return `φ times ${part.column} to the power ${part.exponent === 'estimate' ? 'δ' : part.exponent}`;
-    default:
-      return `that of its “${part.kind}” part`;
+    case 'matrix':
+      return part.scale === 'free' ? `as ${part.file} tells, times a factor of φ` : `as ${part.file} tells`;
+    case 'log-linear':
+      return `log-linear in ${list(part.terms.map(termName))}`;
+    case 'per-class':
+      return part.perSize ? `φ of its ${part.column} divided by ${size}` : `φ of its ${part.column}`;
+    case 'binomial':
+      return `that of a share of independent answers${part.scale === 'free' ? ', times a factor of φ' : ''}`;
+    case 'counts':
+      return `that of a count of events over its exposure${part.scale === 'free' ? ', times a factor of φ' : ''}`;
+    case 'between':
+    case 'shared':
+      throw new RangeError(`${part.kind} is no sampling part`);
   }
 }
 

@@ -16,6 +16,7 @@ export const structureTexts = {
   proposalStands: 'This is the structure that stands.',
   besideToo: 'Put beside it, to be compared:',
   takeBeside: 'State it and put these beside it',
+  besideAtFirst: 'Stated alone it has equal weights beside it, or weights by size, so that a weighting can be priced.',
   partsHeading: 'The structure, part by part',
   partsLead: 'The error variance of a cell is the sum of its parts.',
   addPart: 'add a part',
@@ -65,7 +66,6 @@ export const structureTexts = {
   notStated: 'No structure is stated yet; nothing is fitted before it is.',
   uncover: 'Accept the structure and uncover the answer',
   sizeNeeded: 'needs a column that is the size of a cell: state it under Data',
-  laterVersion: 'This version does not fit it yet.',
 } as const;
 
 /** The answers to the first question, each as a person would give it. */

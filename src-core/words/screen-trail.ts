@@ -2,7 +2,7 @@ import type { TrailLook } from '../protocol/bridge';
 import type { Table } from '../protocol/page-table';
 import { count, plural, quoted } from './numbers';
 import { timeText } from './remarks';
-import { headingOfPlace } from './screen-report';
+import { headingOfPlace } from './report-places';
 import { actionText } from './screen-shell';
 
 export type Entry = TrailLook['entries'][number];

@@ -1,5 +1,4 @@
 import { done, type Outcome, refuse } from '@core/protocol/outcome';
-import type { Result } from '@core/protocol/result';
 import type { How } from '../engine/engine';
 import type { KeptPlan } from '../project/plans';
 import type { HandlersOf } from './answer';
@@ -20,10 +19,7 @@ export function fitHandlers(state: WindowState): HandlersOf<'fit.ask' | 'fit.try
       if (!read.ok) return read;
       const ask = { plan: read.value.text, inputs: atHand(state, inputs) };
       return done({
-        job: state.jobs.begin(null, async (how) => {
-          const text = await state.engine.ask('run', ask, how);
-          return { outcome: text.ok ? done(JSON.parse(text.value) as Result) : text };
-        }),
+        job: state.jobs.begin(null, async (how) => ({ outcome: await state.engine.ask('run', ask, how) })),
       });
     },
     'fit.latest': ({ planId }) =>
@@ -33,7 +29,7 @@ export function fitHandlers(state: WindowState): HandlersOf<'fit.ask' | 'fit.try
         const now = knownFit(state, open, plan.value);
         if (now !== null) show(open, planId, now);
         const before = fitBefore(open, plan.value);
-        return done({ result: resultIn(now?.text ?? null), before: resultIn(before) });
+        return done({ result: now?.text ?? null, before });
       }),
     'job.cancel': async ({ job }) => {
       state.jobs.cancel(job);
@@ -42,17 +38,13 @@ export function fitHandlers(state: WindowState): HandlersOf<'fit.ask' | 'fit.try
   };
 }
 
-function resultIn(text: string | null): Result | null {
-  return text === null ? null : (JSON.parse(text) as Result);
-}
-
 /** Begins to fit a plan as it stands; the job's number. */
 export function beginFit(state: WindowState, planId: number): number {
   return state.jobs.begin(planId, async (how): Promise<Ended> => {
     const fitted = await fittedText(state, planId, how);
     if (!fitted.ok) return { outcome: fitted };
     const { text, unkept } = fitted.value;
-    const outcome = done(JSON.parse(text) as Result);
+    const outcome = done(text);
     return unkept === undefined ? { outcome } : { outcome, unkept };
   });
 }
@@ -86,7 +78,7 @@ export async function fittedText(state: WindowState, planId: number, how: How = 
     const isStill = now === open && !how.signal?.aborted && standsAt(now, planId, plan.stateId);
     return isStill ? now.project.keepFit({ planId, result: text.value }) : refuse('cancelled', {});
   });
-  if (!kept.ok && kept.problems.some(({ code }) => code === 'cancelled' || code === 'no-project')) return kept;
+  if (!kept.ok && kept.problems.some(({ code }) => code === 'cancelled' || code === 'nothing-open')) return kept;
   show(open, planId, fitted);
   return done(kept.ok ? fitted : { ...fitted, unkept: kept.problems });
 }

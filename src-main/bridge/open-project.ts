@@ -1,7 +1,7 @@
 import { accessSync, closeSync, constants, openSync, readSync, statSync } from 'node:fs';
 import { dirname } from 'node:path';
-import { done, type Outcome, refuse } from '@core/protocol/outcome';
-import { removedWhileOpen, replacedWhileOpen } from '@core/words/screen-machine';
+import { done, type Outcome, problem, refuse } from '@core/protocol/outcome';
+import type { Problem } from '@core/protocol/problems';
 import type { KeptPlan } from '../project/plans';
 import { openProject, type Project } from '../project/project';
 import { troubleOf } from '../project/write-whole';
@@ -112,11 +112,19 @@ export function placeOf(file: string): string | null {
 }
 
 /** Refuses a change of a project that may not be written, or no longer stands where it was opened. */
-export function mayChange({ file, readonly, place, head }: OpenProject): Outcome<null> {
-  if (readonly) return refuse('read-only', { file });
+export function mayChange(open: OpenProject): Outcome<null> {
+  if (open.readonly) return refuse('read-only', { file: open.file });
+  const lost = lostBy(open);
+  return lost === null ? done(null) : { ok: false, problems: [lost] };
+}
+
+/** What has become of the file of an open project: removed, replaced, or written by others; null where it stands as it was left. */
+export function lostBy({ file, readonly, place, head }: OpenProject): Problem | null {
   const now = placeOf(file);
-  if (now === place && head.isOurs) return done(null);
-  return refuse('cannot-write', { file, reason: now === null ? removedWhileOpen : replacedWhileOpen });
+  if (now === null) return problem('project-gone', { file });
+  if (now !== place) return problem('project-replaced', { file });
+  // Who reads alone keeps nobody from writing: SQLite itself sees what others wrote.
+  return readonly || head.isOurs ? null : problem('project-overwritten', { file });
 }
 
 /** A plan as it stands in the project. Refusal: no such plan. */

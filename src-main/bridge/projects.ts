@@ -7,6 +7,7 @@ import { createProject } from '../project/project';
 import { troubleOf } from '../project/write-whole';
 import type { HandlersOf } from './answer';
 import { makeDemo } from './demo';
+import { lostBy } from './open-project';
 import { projectName } from './recent';
 import type { WindowState } from './window-state';
 
@@ -82,7 +83,11 @@ async function saveAs(state: WindowState): Promise<Outcome<ProjectLook | null>> 
   if (chosen === null) return done(null);
   const file = withEnding(chosen);
   if (file !== resolve(chosen) && existsSync(file)) return refuse('already-there', { file });
-  const saved = await state.reading((open) => open.project.saveAs(file));
+  const saved = await state.reading((open) => {
+    const lost = lostBy(open);
+    // What others wrote into the file is not the project that stands on the screen.
+    return lost?.code === 'project-overwritten' ? { ok: false, problems: [lost] } : open.project.saveAs(file);
+  });
   return saved.ok ? state.switchTo(file) : saved;
 }
 

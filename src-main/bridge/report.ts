@@ -1,4 +1,5 @@
 import { done, type Outcome, refuse } from '@core/protocol/outcome';
+import type { How } from '../engine/engine';
 import { freezeKept } from '../engine/freeze';
 import type { HandlersOf } from './answer';
 import { fittedText } from './fits';
@@ -19,12 +20,17 @@ type Questions =
 
 export function reportHandlers(state: WindowState): HandlersOf<Questions> {
   return {
-    'report.pages': ({ planId, edition }) => (edition === null ? pagesOf(state, planId) : editionPages(state, edition)),
-    'report.note': ({ place, text }) =>
-      state.changed(({ project }) => {
-        const now = project.notes().find((note) => note.place === place)?.text ?? null;
-        return now === text ? done(null) : project.setNote({ place, text });
-      }),
+    'report.pages': ({ planId, edition }) =>
+      state.jobs.during('report.pages', (how) =>
+        edition === null ? pagesOf(state, planId, how) : editionPages(state, edition, how),
+      ),
+    'report.note': ({ place, text, author: given }) =>
+      by(given, (author) =>
+        state.changed(({ project }) => {
+          const now = project.notes().find((note) => note.place === place)?.text ?? null;
+          return now === text ? done(null) : project.setNote({ place, text, author });
+        }),
+      ),
     'report.decide': (ask) =>
       by(ask.author, (author) =>
         state.changed(({ project }) => {
@@ -32,8 +38,9 @@ export function reportHandlers(state: WindowState): HandlersOf<Questions> {
           return text.ok ? project.decide({ author, text: text.value }) : text;
         }),
       ),
-    'report.freeze': ({ planId, author: given }) => by(given, (author) => freeze(state, planId, author)),
-    'report.check': ({ edition }) => check(state, edition),
+    'report.freeze': ({ planId, author: given }) =>
+      by(given, (author) => state.jobs.during('report.freeze', (how) => freeze(state, { planId, author }, how))),
+    'report.check': ({ edition }) => state.jobs.during('report.check', (how) => check(state, edition, how)),
     'report.sign-off': ({ edition, role: given, author: by_ }) =>
       by(by_, (author) =>
         state.changed(({ project }) => {
@@ -61,24 +68,32 @@ async function by<T>(given: string, work: (author: string) => Promise<Outcome<T>
   return author.ok ? work(author.value) : author;
 }
 
-/** The pages of a plan as it stands: the bytes that `run` writes. */
-async function pagesOf(state: WindowState, planId: number) {
-  const fitted = await fittedText(state, planId);
-  return fitted.ok ? state.engine.ask('print', { result: fitted.value.text, edition: null }) : fitted;
+/** The pages of a plan as it stands: the bytes that `run` writes, with the project's notes where there are any. */
+async function pagesOf(state: WindowState, planId: number, how: How) {
+  const fitted = await fittedText(state, planId, how);
+  if (!fitted.ok) return fitted;
+  const { text: result } = fitted.value;
+  return state.reading(({ project }) =>
+    state.engine.ask('print', { result, edition: null, notes: project.notes() }, how),
+  );
 }
 
 /** The pages of an edition as they were frozen, to the byte. */
-function editionPages(state: WindowState, number: number) {
+function editionPages(state: WindowState, number: number, how: How) {
   return state.reading(async ({ project, file }) => {
     const [edition] = project.editions(number);
     if (edition === undefined) return refuse('no-edition', { file });
-    const printed = await state.engine.ask('print', { result: edition.result, edition: edition.facts });
+    const printed = await state.engine.ask('print', { result: edition.result, edition: edition.facts }, how);
     return printed.ok ? done({ document: printed.value.document, pdf: Uint8Array.from(edition.report) }) : printed;
   });
 }
 
-async function freeze(state: WindowState, planId: number, author: string) {
-  const fitted = await fittedText(state, planId);
+async function freeze(
+  state: WindowState,
+  { planId, author }: { readonly planId: number; readonly author: string },
+  how: How,
+) {
+  const fitted = await fittedText(state, planId, how);
   if (!fitted.ok) return fitted;
   const { stateId, text: result } = fitted.value;
   const frozen = await state.changing((open) => {
@@ -90,7 +105,7 @@ async function freeze(state: WindowState, planId: number, author: string) {
       name: projectName(open.file),
       keep: () => open.project.keepFit({ planId, result }),
       print: async (edition) => {
-        const printed = await state.engine.ask('print', { result, edition });
+        const printed = await state.engine.ask('print', { result, edition }, how);
         return printed.ok ? done(printed.value.pdf) : printed;
       },
     });
@@ -101,15 +116,15 @@ async function freeze(state: WindowState, planId: number, author: string) {
 }
 
 /** Makes an edition again from its plan and the bytes that the project holds, and compares. */
-function check(state: WindowState, number: number) {
+function check(state: WindowState, number: number, how: How) {
   return state.reading(({ project }) =>
     project.checkEdition(number, async ({ plan, inputs, facts }) => {
-      const result = await state.engine.ask('run', { plan, inputs });
+      const result = await state.engine.ask('run', { plan, inputs }, how);
       if (!result.ok) return result;
       return done({
         result: result.value,
         report: async () => {
-          const printed = await state.engine.ask('print', { result: result.value, edition: facts });
+          const printed = await state.engine.ask('print', { result: result.value, edition: facts }, how);
           if (!printed.ok) throw new Error(`the report was not printed: ${printed.problems[0]?.code}`);
           return printed.value.pdf;
         },

@@ -5,10 +5,13 @@ import { type Engine, openEngine } from '../engine/engine';
 import { troubleOf } from '../project/write-whole';
 import type { Desk } from './desk';
 import { Jobs } from './jobs';
-import { closeOpen, mayChange, type OpenProject, openAt, placeOf } from './open-project';
+import { closeOpen, lostBy, mayChange, type OpenProject, openAt, placeOf } from './open-project';
 import { projectLook } from './project-look';
 import { projectName, RecentList } from './recent';
 import { TakenFiles } from './taken-files';
+
+/** How often the open project's file is looked after, in milliseconds. */
+const ROUND = 1500;
 
 /** What one window has open and under way; the handlers of its questions share it. */
 export class WindowState {
@@ -22,6 +25,8 @@ export class WindowState {
   #open: OpenProject | null = null;
   #engine: Engine | null = null;
   #turn: Promise<unknown> = Promise.resolve();
+  #rounds: NodeJS.Timeout | undefined;
+  #isChanging = false;
 
   constructor(desk: Desk, start?: () => Worker) {
     this.desk = desk;
@@ -53,7 +58,7 @@ export class WindowState {
   }
 
   get open(): Outcome<OpenProject> {
-    return this.#open === null ? refuse('no-project', { file: '' }) : done(this.#open);
+    return this.#open === null ? refuse('nothing-open', {}) : done(this.#open);
   }
 
   /** Reads of the open project; what the disk or SQLite refuses comes back as a refusal. */
@@ -73,9 +78,11 @@ export class WindowState {
       this.reading(async (open) => {
         const may = mayChange(open);
         if (!may.ok) return may;
+        this.#isChanging = true;
         try {
           return await work(open);
         } finally {
+          this.#isChanging = false;
           open.head.note();
         }
       }),
@@ -108,6 +115,7 @@ export class WindowState {
         if (!next.ok) return next;
         await this.#leave();
         this.#open = next.value;
+        this.#lookAfter(next.value);
         this.recent.add(next.value.file, new Date().toISOString());
       }
       return this.look();
@@ -127,9 +135,22 @@ export class WindowState {
     this.#engine = null;
     this.jobs.cancelAll(); // not waited for: one that is about to keep its fit waits for this turn to end
     await engine?.close();
+    clearInterval(this.#rounds);
     if (this.#open !== null) closeOpen(this.#open);
     this.#open = null;
     this.#show(null);
+  }
+
+  /** Tells, while a project is open, when its file is taken away or written by others, and when it is back. */
+  #lookAfter(open: OpenProject): void {
+    let told: string | null = null;
+    this.#rounds = setInterval(() => {
+      if (this.#isChanging) return;
+      const lost = lostBy(open);
+      if ((lost?.code ?? null) === told) return;
+      told = lost?.code ?? null;
+      this.desk.tell({ kind: 'file', problems: lost === null ? [] : [lost] });
+    }, ROUND).unref();
   }
 
   #show(look: ProjectLook | null): void {

@@ -1,4 +1,5 @@
 import { type EditionFacts, reportOf } from '@core/index';
+import type { ReportDocument } from '@core/protocol/document';
 import type { Result } from '@core/protocol/result';
 import { printReport } from '../print/print-report';
 
@@ -12,8 +13,14 @@ export function textOfResult(result: Result): string {
 
 /** The printed report of a result; edition: what is known of the edition that it belongs to, null for none. */
 export function printedReport(result: Result, edition: EditionFacts | null): Promise<Uint8Array> {
-  return printReport(reportOf({ result, edition }), {
-    date: edition?.time ?? UNDATED,
-    version: result.made.version,
-  });
+  return printed(reportOf({ result, edition }), { result, edition });
+}
+
+/** A report's document, printed. progress: hears how much of it is set, 0 to 1. */
+export function printed(
+  document: ReportDocument,
+  { result, edition }: { readonly result: Result; readonly edition: EditionFacts | null },
+  progress: (share: number) => void = () => {},
+): Promise<Uint8Array> {
+  return printReport(document, { date: edition?.time ?? UNDATED, version: result.made.version }, progress);
 }

@@ -1,12 +1,14 @@
 import { Worker } from 'node:worker_threads';
 import { type Outcome, refuse } from '@core/protocol/outcome';
-import { tooLargeForMemory } from '@core/words/screen-machine';
 import workerPath from './engine.worker?modulePath';
 import type { EngineAnswers, EngineAsks, EngineKind, FromEngine, ToEngine } from './questions';
 import type { ShelfName } from './shelf';
 
 /** How long a question may take to notice that it was cancelled before its thread is ended, in milliseconds. */
 const PATIENCE = 3000;
+
+/** How long a thread that is not waited for any more may take to come to rest, in milliseconds: ended in the middle of its work it can, rarely, take the process with it. */
+const RETIREMENT = 30_000;
 
 /** What one thread may take of memory: a table that needs more is refused, and the program goes on. */
 const MEMORY = { maxOldGenerationSizeMb: 3072 };
@@ -81,7 +83,7 @@ export function openEngine({
     const lost = worker;
     worker = null;
     sent.clear();
-    void lost?.terminate();
+    if (lost !== null) retire(lost);
     settle(outcome);
   }
 
@@ -143,20 +145,32 @@ export function openEngine({
       active = null;
       left?.answer(refuse('cancelled', {}));
       // A thread is ended at rest where that can be had: it is told to stop, and given its time.
-      if (own && left) await stopped(own, left.flag);
-      await own?.terminate();
+      const isAtRest = own === null || left === null || (await stopped(own, left.flag));
+      if (isAtRest) await own?.terminate();
+      else if (own !== null) retire(own);
     },
   };
 }
 
-/** Waits until a thread that was told to stop answers what it was at, but no longer than its patience. */
-function stopped(own: Worker, flag: SharedArrayBuffer): Promise<void> {
+/** Lets a thread that nobody waits for end once it is at rest, or when its time is up. */
+function retire(own: Worker): void {
+  const late = setTimeout(() => void own.terminate(), RETIREMENT).unref();
+  own.unref();
+  own.on('message', (told: FromEngine) => {
+    if (told.kind !== 'answer') return;
+    clearTimeout(late);
+    void own.terminate();
+  });
+}
+
+/** Waits until a thread that was told to stop answers what it was at, but no longer than its patience. True where it came to rest. */
+function stopped(own: Worker, flag: SharedArrayBuffer): Promise<boolean> {
   Atomics.store(new Int32Array(flag), 0, 1);
   return new Promise((ended) => {
-    const patience = setTimeout(ended, PATIENCE);
+    const patience = setTimeout(() => ended(false), PATIENCE);
     const heard = () => {
       clearTimeout(patience);
-      ended();
+      ended(true);
     };
     own.on('message', (told: FromEngine) => told.kind === 'answer' && heard());
     own.once('exit', heard);
@@ -173,8 +187,5 @@ function filesIn({ ask }: Asked): readonly ShelfName[] {
 function faultOf(fault: unknown, asked: Asked | null): Outcome<never> {
   const { code, message } = fault as { readonly code?: string; readonly message?: string };
   if (code !== 'ERR_WORKER_OUT_OF_MEMORY') return refuse('fault-of-ours', { message: message ?? String(fault) });
-  return refuse('cannot-read', {
-    file: asked === null ? '' : (filesIn(asked)[0]?.name ?? ''),
-    reason: tooLargeForMemory,
-  });
+  return refuse('memory-full', { file: asked === null ? '' : (filesIn(asked)[0]?.name ?? '') });
 }

@@ -1,5 +1,6 @@
-import type { EditionFacts } from '@core/index';
-import type { DataComparison, DataLook, DataPreview } from '@core/protocol/bridge';
+import type { EditionFacts, NoteFacts } from '@core/index';
+import type { DataComparison, DataPreview } from '@core/protocol/bridge';
+import type { PackedLook } from '@core/protocol/data-look';
 import type { ReportDocument } from '@core/protocol/document';
 import type { Outcome } from '@core/protocol/outcome';
 import type { Read } from '@core/protocol/plan';
@@ -21,12 +22,17 @@ export interface EngineAsks {
     readonly after: readonly ShelfName[];
   };
   readonly run: PlanAsk;
-  readonly print: { readonly result: string; readonly edition: EditionFacts | null };
+  /** notes: of a plan as it stands; an edition has its own. */
+  readonly print: {
+    readonly result: string;
+    readonly edition: EditionFacts | null;
+    readonly notes?: readonly NoteFacts[];
+  };
 }
 
 export interface EngineAnswers {
   readonly preview: DataPreview;
-  readonly look: DataLook;
+  readonly look: PackedLook;
   readonly compare: DataComparison;
   /** The result as the one text that is written, stored and hashed. */
   readonly run: string;

@@ -2,6 +2,7 @@ import { filesOf } from '@core/index';
 import { type Outcome, refuse } from '@core/protocol/outcome';
 import type { Plan, Read } from '@core/protocol/plan';
 import type { SourceTable } from '@core/protocol/source';
+import { checkTableSize } from '../intake/count-fields';
 import { readSource } from '../intake/read-source';
 
 /** Which bytes a name of a plan stands for. */
@@ -46,6 +47,8 @@ export function openShelf(room: number): Shelf {
     const way = JSON.stringify([name, read]);
     const known = kept.tables.get(way);
     if (known !== undefined) return { ok: true, value: known };
+    const fits = checkTableSize(name, kept.bytes);
+    if (!fits.ok) return fits;
     const made = readSource({ file: name, bytes: kept.bytes, read, at });
     if (made.ok) {
       kept.tables.clear(); // one way of reading at a time: a preview tries many

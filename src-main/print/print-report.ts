@@ -16,18 +16,24 @@ import { tableAtoms } from './table';
  * It adds no word and no number to the document but those of the pages. The same document, date and version give the same bytes on any machine: nothing is compressed, and the
  * file's identifier is made from title, subject, author, version and date.
  *
- * date: ISO 8601, the only date in the file.
+ * date: ISO 8601, the only date in the file. progress: hears after each part which share of them is set.
  * A missing caption, note or author takes no room.
  */
-export async function printReport(document: ReportDocument, options: PrintOptions): Promise<Uint8Array> {
+export async function printReport(
+  document: ReportDocument,
+  options: PrintOptions,
+  progress: (share: number) => void = () => {},
+): Promise<Uint8Array> {
   const [pdf, drawn] = await Promise.all([openReport(document, options), drawFigures(document.blocks)]);
   const pen = openPen(pdf);
   const sheet = sheetOf(document.paper, footLines(pen, document));
   const desk = { pen, sheet };
   const flow = openFlow(pen, sheet);
-  for (const part of partsOf(document.blocks)) {
+  const parts = partsOf(document.blocks);
+  for (const [i, part] of parts.entries()) {
     flow.breakPage();
-    flow.place(part.flatMap((block, i) => atomsOf(desk, block, { before: part[i - 1], drawn })));
+    flow.place(part.flatMap((block, at) => atomsOf(desk, block, { before: part[at - 1], drawn })));
+    progress((i + 1) / parts.length);
   }
   drawFeet(pen, document, flow.finish());
   return bytesOf(pdf);

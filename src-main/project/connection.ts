@@ -1,7 +1,8 @@
 import { closeSync, openSync, readSync, statSync } from 'node:fs';
 import { done, type Outcome, refuse } from '@core/protocol/outcome';
+import { HEAD_BYTES, isProject, PROJECT_MARK } from '@core/protocol/project-mark';
 import Database from 'better-sqlite3';
-import { APPLICATION_ID, lastOf, layoutFinding, layoutOf, objectsOf, type Step, steps, take } from './layout';
+import { lastOf, layoutFinding, layoutOf, objectsOf, type Step, steps, take } from './layout';
 import { guarded } from './store';
 import { upgrade } from './upgrade';
 
@@ -34,7 +35,7 @@ export function makeEmpty(file: string): Database.Database {
   const db = new Database(file);
   db.pragma('page_size = 65536');
   settle(db, { readonly: false });
-  db.pragma(`application_id = ${APPLICATION_ID}`);
+  db.pragma(`application_id = ${PROJECT_MARK}`);
   for (const step of steps) take(db, step);
   return db;
 }
@@ -75,15 +76,15 @@ function checkHead(file: string): Outcome<null> {
   if (stands === undefined) return refuse('no-project', { file });
   if (stands.isDirectory()) return refuse('in-the-way', { file, wanted: 'file' });
   if (!stands.isFile()) return refuse('not-a-project', { file });
-  const head = Buffer.alloc(100);
+  return isProject(headOf(file)) ? done(null) : refuse('not-a-project', { file });
+}
+
+/** The first bytes of a file, fewer where it has fewer; throws what the machine refuses. */
+export function headOf(file: string): Uint8Array {
+  const head = new Uint8Array(HEAD_BYTES);
   const open = openSync(file, 'r');
   try {
-    const read = readSync(open, head, 0, 100, 0);
-    const isOurs =
-      read === 100 &&
-      head.toString('latin1', 0, 16) === 'SQLite format 3\0' &&
-      head.readUInt32BE(68) === APPLICATION_ID;
-    return isOurs ? done(null) : refuse('not-a-project', { file });
+    return head.subarray(0, readSync(open, head, 0, HEAD_BYTES, 0));
   } finally {
     closeSync(open);
   }

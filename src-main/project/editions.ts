@@ -3,6 +3,7 @@ import { done, type Outcome } from '@core/protocol/outcome';
 import { type Decision, decisions } from './decisions';
 import { structuresTried } from './fits';
 import type { NamedInput } from './inputs';
+import { type Note, notes } from './notes';
 import { inputsOf, stateFacts } from './plans';
 import { sha256Of } from './sha256';
 import { change, type Store } from './store';
@@ -19,6 +20,8 @@ export interface EditionRecord {
   /** Name of the project's file, without its folder. */
   readonly project: string;
   readonly decisions: readonly Decision[];
+  /** Absent where there are none, as in editions that were frozen before notes were printed. */
+  readonly notes?: readonly Note[];
   readonly structuresTried: StructuresTried;
 }
 
@@ -42,6 +45,7 @@ export function nextEdition(store: Store, author: string, name = basename(store.
   const last = store.db.prepare('SELECT max(number) AS number FROM edition').get() as {
     readonly number: number | null;
   };
+  const noted = notes(store);
   return {
     number: (last.number ?? 0) + 1,
     time: store.clock(),
@@ -49,6 +53,7 @@ export function nextEdition(store: Store, author: string, name = basename(store.
     head: headOf(store),
     project: name,
     decisions: decisions(store),
+    ...(noted.length > 0 ? { notes: noted } : {}),
     structuresTried: structuresTried(store),
   };
 }

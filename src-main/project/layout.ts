@@ -1,8 +1,5 @@
 import type Database from 'better-sqlite3';
 
-/** Marks a SQLite file as a project of this program: the letters STLY. */
-export const APPLICATION_ID = 0x53544c59;
-
 /** One forward step of the file's layout. Numbered in tens; never edited once released. */
 export interface Step {
   readonly layout: number;

@@ -1,16 +1,28 @@
 import { done, type Outcome } from '@core/protocol/outcome';
 import { change, type Store } from './store';
-import { record } from './trail';
+import { entries, record } from './trail';
 import { addStep, type Restore } from './undo';
 
 /** What the author adds to the report at one of its places. */
 export interface Note {
   readonly place: string;
   readonly text: string;
+  /** Who wrote it in these words last, and when, by the trail; null where no author was asked for. */
+  readonly author: string | null;
+  readonly time: string;
 }
 
-export function notes({ db }: Store): readonly Note[] {
-  return db.prepare('SELECT place, text FROM note WHERE text IS NOT NULL ORDER BY note_id').all() as Note[];
+export function notes(store: Store): readonly Note[] {
+  const kept = store.db.prepare('SELECT place, text FROM note WHERE text IS NOT NULL ORDER BY note_id').all() as Pick<
+    Note,
+    'place' | 'text'
+  >[];
+  if (kept.length === 0) return [];
+  const written = entries(store, 'note-changed');
+  return kept.map(({ place, text }) => {
+    const entry = written.findLast(({ facts }) => facts['place'] === place && facts['text'] === text);
+    return { place, text, author: entry?.author ?? null, time: entry?.time ?? '' };
+  });
 }
 
 /** Writes, rewrites or (text null) takes out the note of one place; can be undone. */

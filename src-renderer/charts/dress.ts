@@ -89,7 +89,7 @@ export function recoloured(colour: string, { ink, paper }: Dress): string {
   return `rgb(${mixed.join(', ')})`;
 }
 
-function rgbOf(colour: string): readonly [number, number, number] | null {
+export function rgbOf(colour: string): readonly [number, number, number] | null {
   const long = /^#([0-9a-f]{3}|[0-9a-f]{6})$/i.exec(colour)?.[1];
   if (long === undefined) return null;
   const pairs = long.length === 3 ? [...long].map((one) => one + one) : (long.match(/../g) ?? []);
@@ -106,7 +106,7 @@ export interface NamedPoint {
 }
 
 /** The points that carry a cell's label, in the order in which they are drawn. */
-export function namedPoints({ option }: Figure): readonly NamedPoint[] {
+export function namedPoints({ option }: Pick<Figure, 'option'>): readonly NamedPoint[] {
   return option.series.flatMap((one, series) =>
     one.data.flatMap((point) =>
       'value' in point && point.name !== undefined
@@ -117,6 +117,6 @@ export function namedPoints({ option }: Figure): readonly NamedPoint[] {
 }
 
 /** How many data a figure draws. */
-export function sizeOf({ option }: Figure): number {
+export function sizeOf({ option }: Pick<Figure, 'option'>): number {
   return option.series.reduce((sum, { data }) => sum + data.length, 0);
 }

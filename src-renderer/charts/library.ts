@@ -1,18 +1,9 @@
 import { BarChart, LineChart, ScatterChart } from 'echarts/charts';
-import { DataZoomInsideComponent, GraphicComponent, GridComponent } from 'echarts/components';
+import { GraphicComponent, GridComponent } from 'echarts/components';
 import { type EChartsType, init, use } from 'echarts/core';
 import { CanvasRenderer, SVGRenderer } from 'echarts/renderers';
 
 /** Only what a figure can ask for. */
-use([
-  LineChart,
-  ScatterChart,
-  BarChart,
-  GridComponent,
-  GraphicComponent,
-  DataZoomInsideComponent,
-  SVGRenderer,
-  CanvasRenderer,
-]);
+use([LineChart, ScatterChart, BarChart, GridComponent, GraphicComponent, SVGRenderer, CanvasRenderer]);
 
 export { type EChartsType, init };

@@ -9,7 +9,7 @@ export interface Placed {
 }
 
 /** Pointing further off than this many pixels marks nothing. */
-const REACH = 24;
+export const REACH = 24;
 
 /** Where the cells' points stand. */
 export function placedPoints(chart: EChartsType, points: readonly NamedPoint[]): readonly Placed[] {

@@ -1,8 +1,16 @@
+import type { NamedInput } from '@core/protocol/bridge';
 import type { AlsoChanged, Edited } from '@core/protocol/edit-structure';
 import type { Plan } from '@core/protocol/plan';
 import type { Coefficient, Result } from '@core/protocol/result';
 import { headlineTerm } from '@core/words/headline';
 import { session } from './session.svelte';
+
+/** What a change is called, what it changed, and a file that came with it. */
+export interface Change {
+  readonly action: string;
+  readonly at: string;
+  readonly inputs?: readonly NamedInput[];
+}
 
 /** What the screens of the analysis share: the coefficient in view, whether the answer is covered, what the last change took along. */
 class Analysis {
@@ -35,10 +43,10 @@ class Analysis {
   }
 
   /** Sends a changed plan on its way, and keeps what else it changed for the line that says so. */
-  async change(edited: Edited | Plan, { action, at }: { action: string; at: string }): Promise<boolean> {
+  async change(edited: Edited | Plan, how: Change): Promise<boolean> {
     const { plan, also } = 'plan' in edited ? edited : { plan: edited, also: [] };
     this.also = also;
-    return session.change(plan, { action, at });
+    return session.change(plan, how);
   }
 
   /** Learns the columns at hand; they are known already while the data stand as they stood. */

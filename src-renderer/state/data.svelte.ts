@@ -1,16 +1,22 @@
-import type { DataComparison, DataLook, DataPreview, NamedInput } from '@core/protocol/bridge';
+import type { DataComparison, DataPreview, NamedInput } from '@core/protocol/bridge';
 import { proposeRoles, type RoleProposal, withRole, withUse } from '@core/protocol/column-roles';
+import { type DataLook, unpackLook } from '@core/protocol/data-look';
 import { type Draft, type DraftPlan, draftOf } from '@core/protocol/draft';
 import { filePlaces } from '@core/protocol/edit-data';
-import { problem } from '@core/protocol/outcome';
+import { LARGEST_SENT } from '@core/protocol/limits';
+import { done, type Outcome, problem } from '@core/protocol/outcome';
 import type { Plan } from '@core/protocol/plan';
 import type { Problem } from '@core/protocol/problems';
-import { tooLarge } from '@core/words/screen-machine';
+import { HEAD_BYTES, isProject } from '@core/protocol/project-mark';
 import { ask } from './ask';
 import { session } from './session.svelte';
 
-/** Files above this many bytes are not sent: main refuses them, and sending alone would take long. */
-const LARGEST = 64_000_000;
+/** So many previews are kept. */
+const KNOWN = 12;
+
+function wayOf({ name, sha256, read }: Pick<DataPreview, 'name' | 'sha256' | 'read'>): string {
+  return JSON.stringify([name, sha256, read]);
+}
 
 /** What a file that was brought in is compared with, before it takes the place of the plan's own. */
 interface Replacement {
@@ -27,17 +33,30 @@ class DataDesk {
   problems = $state.raw<readonly Problem[]>([]);
   busy = $state<string | null>(null);
   looking = $state(false);
+  /** Looking was stopped by hand. */
+  stopped = $state(false);
   /** A file that was brought in while there is a plan: its purpose is to be said. */
   arrived = $state.raw<DataPreview | null>(null);
   replacement = $state.raw<Replacement | null>(null);
   /** What was proposed for the main file's columns. */
   proposals = $state.raw<readonly RoleProposal[]>([]);
   #turn = 0;
+  /** The previews of late, by file and way of reading: one that is known is not asked for again. */
+  readonly #known = new Map<string, DataPreview>();
+
+  #keep(preview: DataPreview): void {
+    if (preview.problems.length > 0) return; // they may be gone by the next time
+    const way = wayOf(preview);
+    this.#known.delete(way);
+    this.#known.set(way, preview);
+    for (const oldest of [...this.#known.keys()].slice(0, -KNOWN)) this.#known.delete(oldest);
+  }
 
   /** Looks at the plan's files anew; what comes of an older look is dropped. */
   async follow(plan: Plan | DraftPlan | null, inputs: readonly NamedInput[]): Promise<void> {
     const turn = ++this.#turn;
-    this.looking = false;
+    this.looking = this.stopped = false;
+    for (const question of ['data.preview', 'data.look'] as const) void session.jobs.cancelAsked(question);
     if (plan === null) {
       this.previews = {};
       this.look = null;
@@ -49,9 +68,13 @@ class DataDesk {
     for (const { file, read } of filePlaces(plan)) {
       const sha256 = inputs.find(({ name }) => name === file)?.sha256;
       if (sha256 === undefined) continue;
-      const outcome = await ask('data.preview', $state.snapshot({ name: file, sha256, read }));
+      const known = this.#known.get(wayOf({ name: file, sha256, read }));
+      const outcome = known ? done(known) : await ask('data.preview', $state.snapshot({ name: file, sha256, read }));
       if (turn !== this.#turn) return;
-      if (outcome.ok) previews[file] = outcome.value;
+      if (outcome.ok) {
+        previews[file] = outcome.value;
+        this.#keep(outcome.value);
+      } else if (isCancelled(outcome)) return this.#stop();
       else problems.push(...outcome.problems);
       if (outcome.ok) problems.push(...outcome.value.problems);
     }
@@ -74,17 +97,24 @@ class DataDesk {
     const outcome = await ask('data.look', $state.snapshot({ plan: lookable(plan), inputs: [...inputs] }) as never);
     if (turn !== this.#turn) return;
     this.looking = false;
-    this.look = outcome.ok ? outcome.value : null;
+    if (isCancelled(outcome)) return this.#stop();
+    this.look = outcome.ok ? unpackLook(outcome.value) : null;
     this.problems = outcome.ok ? [] : outcome.problems;
+  }
+
+  #stop(): void {
+    this.look = null;
+    this.problems = [];
+    this.stopped = true;
   }
 
   /** A file as it was dropped, or a text as it was pasted. */
   async takeFile(file: File): Promise<void> {
-    if (file.size > LARGEST) {
-      session.problems = [problem('cannot-read', { file: file.name, reason: tooLarge(file.size, LARGEST) })];
-      return;
-    }
-    await this.#take(file.name, new Uint8Array(await file.arrayBuffer()));
+    const head = new Uint8Array(await file.slice(0, HEAD_BYTES).arrayBuffer());
+    if (isProject(head)) session.problems = [problem('is-a-project', { file: file.name, offered: false })];
+    else if (file.size > LARGEST_SENT)
+      session.problems = [problem('file-too-large', { file: file.name, size: file.size, limit: LARGEST_SENT })];
+    else await this.#take(file.name, new Uint8Array(await file.arrayBuffer()));
   }
 
   async takeText(name: string, text: string): Promise<void> {
@@ -105,6 +135,7 @@ class DataDesk {
 
   #arrive(preview: DataPreview | null): void {
     if (preview === null) return;
+    this.#keep(preview);
     if (session.plan === null) this.begin(preview);
     else this.arrived = preview;
   }
@@ -164,6 +195,10 @@ class DataDesk {
     const own = Object.values(this.previews).flatMap(({ columns }) => columns.map(({ name }) => name));
     return [...new Set([...own, ...(session.plan?.data.derive.map(({ name }) => name) ?? [])])];
   }
+}
+
+function isCancelled(outcome: Outcome<unknown>): boolean {
+  return !outcome.ok && outcome.problems.some(({ code }) => code === 'cancelled');
 }
 
 /** A plan whose data can be looked at: before its variance is stated any structure will do, since none is fitted. */

@@ -1,4 +1,4 @@
-import type { CellLook, DataLook } from '@core/protocol/bridge';
+import type { CellLook, DataLook } from '@core/protocol/data-look';
 import { type Presence, presenceOf } from '@core/words/screen-data';
 
 /** One ruled line of the register: a block, and its cells in the order of the columns; null where there is no such row. */

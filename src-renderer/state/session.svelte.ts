@@ -1,11 +1,28 @@
-import type { Answers, Ask, Asked, NamedInput, ProjectLook, ProjectPlan, StartLook, Told } from '@core/protocol/bridge';
+import type {
+  Answers,
+  Ask,
+  Asked,
+  Heard,
+  NamedInput,
+  ProjectLook,
+  ProjectPlan,
+  StartLook,
+} from '@core/protocol/bridge';
 import type { Command } from '@core/protocol/commands';
-import { type Draft, type DraftPlan, readDraft } from '@core/protocol/draft';
+import {
+  type Draft,
+  type DraftPlan,
+  type DraftSteps,
+  draftText,
+  noSteps,
+  readDraft,
+  readSteps,
+} from '@core/protocol/draft';
 import type { Outcome } from '@core/protocol/outcome';
 import type { Plan } from '@core/protocol/plan';
 import type { Problem } from '@core/protocol/problems';
 import type { CellResult, Result } from '@core/protocol/result';
-import { ask, listen } from './ask';
+import { ask, latestFit, listen } from './ask';
 import { Jobs } from './jobs.svelte';
 import { margin } from './margin.svelte';
 
@@ -13,12 +30,6 @@ import { margin } from './margin.svelte';
 const REST = 300;
 /** So many steps of a draft can be taken back. */
 const STEPS = 100;
-
-/** A draft as it stood before (or after) what was done. */
-interface DraftStep {
-  readonly action: string;
-  readonly draft: Draft;
-}
 
 /** What is kept of the window's work: the open project, the plan looked at, its latest fit. Screens read it and ask it; it alone asks main. */
 export class Session {
@@ -38,14 +49,13 @@ export class Session {
   changed = $state<string | null>(null);
   /** Trouble of the last thing that was asked, or of the latest fit. */
   problems = $state.raw<readonly Problem[]>([]);
+  /** What has become of the project's file while it is open; empty while it stands where it was. */
+  lost = $state.raw<readonly Problem[]>([]);
   /** Number of the latest fit asked for. */
   latestJob = $state<number | null>(null);
   readonly jobs = new Jobs();
   #resting: ReturnType<typeof setTimeout> | undefined;
-  #steps = $state.raw<{ readonly done: readonly DraftStep[]; readonly undone: readonly DraftStep[] }>({
-    done: [],
-    undone: [],
-  });
+  #steps = $state.raw<DraftSteps>(noSteps);
 
   /** What is looked at is a plan on its way, not yet one of the project. */
   readonly inDraft = $derived(this.planId === null && this.draft !== null);
@@ -80,13 +90,24 @@ export class Session {
           return void this.open(told.file);
         case 'leaving':
           return void this.keepDraftNow();
+        case 'file':
+          return this.#hearOfFile(told.problems);
         case 'progress':
+        case 'begun':
+        case 'ended':
           return this.jobs.hear(told);
         case 'done':
           this.jobs.hear(told);
           return this.#done(told);
       }
     });
+  }
+
+  /** What is told of the file takes the place of what was told of it before. */
+  #hearOfFile(problems: readonly Problem[]): void {
+    const before = new Set(this.lost.map(({ code }) => code));
+    this.problems = this.problems.filter(({ code }) => !before.has(code));
+    this.lost = problems;
   }
 
   async start(): Promise<void> {
@@ -103,6 +124,12 @@ export class Session {
     return null;
   }
 
+  /** Asks for a file by a dialog and takes its bytes in; null where none was chosen, or it was refused. */
+  async chooseFile(): Promise<NamedInput | null> {
+    const preview = await this.ask('data.choose', {});
+    return preview === null ? null : { name: preview.name, sha256: preview.sha256 };
+  }
+
   /** Puts a text on the clipboard; false where it was refused. */
   async copy(text: string, html: string | null): Promise<boolean> {
     const outcome = await ask('keep.copy', { text, html });
@@ -111,22 +138,28 @@ export class Session {
   }
 
   async openDemo(): Promise<void> {
+    await this.keepDraftNow();
     this.#enter(await this.ask('project.demo', {}));
   }
 
   /** True where a new project was made. */
   async create(): Promise<boolean> {
+    await this.keepDraftNow();
     const made = await this.ask('project.create', {});
     this.#enter(made);
     return made !== null;
   }
 
   async open(file: string | null): Promise<void> {
+    await this.keepDraftNow();
     this.#enter(await this.ask('project.open', { file }));
   }
 
   async saveAs(): Promise<void> {
-    this.#take(await this.ask('project.save-as', {}));
+    const saved = await this.ask('project.save-as', {});
+    if (saved === null) return;
+    this.lost = [];
+    this.#take(saved);
   }
 
   async close(): Promise<void> {
@@ -179,11 +212,11 @@ export class Session {
     const answer = await this.ask('plan.add', { name, plan, inputs });
     if (answer === null) return false;
     this.#take(answer.project);
-    await this.dropDraft();
     this.changed = '/variance';
     this.planId = answer.planId;
     this.result = this.before = null;
     this.#follow(answer.job);
+    await this.dropDraft();
     return true;
   }
 
@@ -196,12 +229,13 @@ export class Session {
     this.planId = planId;
     this.result = this.before = this.latestJob = null;
     this.changed = null;
+    this.problems = [];
     await this.settle();
   }
 
   /** Puts a draft in the place of the one before; action: what was done, where it is to be a step that can be taken back. */
   setDraft(draft: Draft | null, action: string | null = null): void {
-    if (action === null || this.draft === null || draft === null) this.#steps = { done: [], undone: [] };
+    if (action === null || this.draft === null || draft === null) this.#steps = noSteps;
     else this.#steps = { done: [...this.#steps.done, { action, draft: this.draft }].slice(-STEPS), undone: [] };
     this.#putDraft(draft);
   }
@@ -215,7 +249,7 @@ export class Session {
   async keepDraftNow(): Promise<void> {
     clearTimeout(this.#resting);
     if (this.project === null || this.project.readonly) return;
-    const text = this.draft === null ? null : JSON.stringify(this.draft);
+    const text = this.draft === null ? null : draftText(this.draft, this.#steps);
     if (text !== this.project.draft) this.#take(await this.ask('draft.keep', { text }));
   }
 
@@ -252,11 +286,19 @@ export class Session {
     const kept = this.kept;
     if (kept === null) return;
     const { planId } = kept;
-    const latest = await this.ask('fit.latest', { planId });
-    if (this.planId !== planId || latest === null) return;
-    this.before = latest.before;
-    this.result = latest.result;
-    if (latest.result !== null && isOf(latest.result, kept)) return;
+    const latest = await latestFit(planId);
+    if (this.planId !== planId) return;
+    if (!latest.ok) {
+      this.problems = latest.problems;
+      return;
+    }
+    const { result, before } = latest.value;
+    this.before = before;
+    this.result = result;
+    if (result !== null && isOf(result, kept)) {
+      this.problems = []; // trouble of another plan, or of this one as it stood
+      return;
+    }
     const begun = await this.ask('fit.ask', { planId });
     if (begun !== null) this.#follow(begun.job);
   }
@@ -289,12 +331,15 @@ export class Session {
   #follow(job: number): void {
     this.latestJob = job;
     this.problems = [];
-    this.jobs.begun(job);
+    const early = this.jobs.early(job);
+    if (early === null) this.jobs.begun(job);
+    else this.#done(early);
   }
 
-  #done({ job, planId, outcome, unkept = [] }: Extract<Told, { kind: 'done' }>): void {
+  #done({ job, planId, outcome, unkept = [] }: Extract<Heard, { kind: 'done' }>): void {
     if (planId === null || planId !== this.planId) return;
     if (this.latestJob !== null && job < this.latestJob) return;
+    if (job === this.latestJob) this.jobs.early(job); // heard, and not to be kept for anybody
     if (outcome.ok) {
       if (this.result !== null && this.result !== outcome.value) this.before = this.result;
       this.result = outcome.value;
@@ -314,6 +359,7 @@ export class Session {
     this.problems = [];
     this.#take(look);
     this.draft = readDraft(look.draft);
+    this.#steps = readSteps(look.draft);
     this.planId = this.draft === null ? (look.plans.at(-1)?.planId ?? null) : null;
     void this.settle();
   }
@@ -322,6 +368,8 @@ export class Session {
     void margin.close({ focus: false });
     this.project = this.planId = this.draft = this.result = this.before = this.marked = this.changed = null;
     this.latestJob = null;
+    this.#steps = noSteps;
+    this.lost = [];
   }
 
   #take(look: ProjectLook | null): void {

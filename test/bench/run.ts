@@ -5,6 +5,7 @@ import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
 import { pathToFileURL } from 'node:url';
 import { build } from 'vite';
+import { measureWindow } from './window.ts';
 
 const root = resolve(import.meta.dirname, '../..');
 const scratch = mkdtempSync(join(tmpdir(), 'steelyard-bench-'));
@@ -12,13 +13,19 @@ const bundle = join(root, 'node_modules/.cache/bench');
 
 /** Median and range of wall-clock milliseconds. */
 function timed(times: number, work: () => void): string {
-  const taken = Array.from({ length: times }, () => {
-    const from = performance.now();
-    work();
-    return performance.now() - from;
-  }).sort((a, b) => a - b);
+  return figureOf(
+    Array.from({ length: times }, () => {
+      const from = performance.now();
+      work();
+      return performance.now() - from;
+    }),
+  );
+}
+
+function figureOf(milliseconds: readonly number[]): string {
+  const taken = milliseconds.toSorted((a, b) => a - b);
   const middle = taken[Math.floor(taken.length / 2)] as number;
-  return `${middle.toFixed(1).padStart(10)} ms   (${(taken[0] as number).toFixed(1)} to ${(taken.at(-1) as number).toFixed(1)}, ${times} runs)`;
+  return `${middle.toFixed(1).padStart(10)} ms   (${(taken[0] as number).toFixed(1)} to ${(taken.at(-1) as number).toFixed(1)}, ${taken.length} runs)`;
 }
 
 const say = (what: string, figure: string) => console.log(`${what.padEnd(62)}${figure}`);
@@ -75,4 +82,5 @@ say(
   'start of the command line (--version)',
   timed(7, () => command('--version')),
 );
+await measureWindow((what, taken) => say(what, figureOf(taken)), measured.tableText);
 rmSync(scratch, { recursive: true, force: true });

@@ -1,7 +1,9 @@
-import { writeFileSync } from 'node:fs';
+import { copyFileSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
+import { unpackLook } from '@core/protocol/data-look';
+import { unsaidRead } from '@core/protocol/draft';
+import { LARGEST_READ, LARGEST_SENT } from '@core/protocol/limits';
 import { sentence } from '@core/words/problems';
-import { LARGEST } from '@main/bridge/taken-files';
 import { sha256Of } from '@main/project/sha256';
 import { describe, expect, it } from 'vitest';
 import {
@@ -17,15 +19,6 @@ import {
   withProject,
 } from './window';
 
-const noRead = {
-  encoding: null,
-  delimiter: null,
-  decimal: null,
-  group: null,
-  statuses: {},
-  missing: {},
-  footnotes: [],
-};
 const bytesOf = (text: string) => new TextEncoder().encode(text);
 
 describe('a file that is taken in', () => {
@@ -40,7 +33,7 @@ describe('a file that is taken in', () => {
       name: 'care.csv',
       sha256: sha256Of(text),
       size: text.length,
-      read: noRead,
+      read: unsaidRead,
       found: { encoding: 'utf-8', delimiter: ';' },
       rows: 3,
       problems: [],
@@ -91,7 +84,7 @@ describe('a file that is taken in', () => {
     expect(taken(await preview({})).columns[0]).toMatchObject({ readsBothWays: true, decimal: null });
     const settled = taken(await preview({ decimal: ',', group: '.' }));
     expect(settled).toMatchObject({
-      read: { ...noRead, decimal: ',', group: '.' },
+      read: { ...unsaidRead, decimal: ',', group: '.' },
       columns: [{ decimal: ',', group: '.' }, {}],
     });
     expect(taken(await preview({ delimiter: '|' })).columns.map(({ name }) => name)).toEqual(['a;b']);
@@ -129,28 +122,80 @@ describe('a file that is taken in', () => {
     const bytes = new Uint8Array(200_000_000).fill(0x61);
     const before = process.memoryUsage().rss;
     const dropped = firstProblem(await window.ask('data.take', { name: 'big.txt', bytes }));
-    expect(dropped?.code).toBe('cannot-read');
+    expect(dropped).toEqual({
+      code: 'file-too-large',
+      at: null,
+      facts: { file: 'big.txt', size: 200_000_000, limit: LARGEST_SENT },
+    });
     expect(dropped && sentence(dropped)).toBe(
-      '“big.txt” could not be read (it has 200 megabytes, and files up to 32 megabytes are read; keep the rows and columns that the cells need).',
+      '“big.txt” has 200 megabytes, and files up to 32 megabytes are read here. Keep the rows and columns that the cells need.',
     );
     const file = join(folder(), 'big.txt');
     writeFileSync(file, bytes);
     window.choose(file);
-    expect(firstProblem(await window.ask('data.choose', {}))).toEqual(dropped);
+    expect(firstProblem(await window.ask('data.choose', {}))?.facts).toEqual({
+      ...dropped?.facts,
+      limit: LARGEST_READ,
+    });
     expect(process.memoryUsage().rss - before).toBeLessThan(100_000_000);
   });
 
-  it('of the largest size that is read is read, or refused, and the program goes on', async () => {
+  it('that is too large to be sent is read from its place where it was chosen', async () => {
     const window = openWindow();
-    const line = bytesOf('1,2\n');
-    const bytes = new Uint8Array(LARGEST);
-    for (let at = 0; at < LARGEST; at += line.length) bytes.set(line, at);
-    bytes.set(bytesOf('a,b\n'), 0);
-    const preview = await window.ask('data.take', { name: 'long.csv', bytes });
-    if (preview.ok) expect(preview.value.rows).toBe(LARGEST / line.length - 1);
-    else expect(codesOf(preview)).toEqual(['cannot-read']);
+    const line = `1,${'x'.repeat(4000)}\n`;
+    const bytes = bytesOf(`a,b\n${line.repeat(Math.ceil(LARGEST_SENT / line.length))}`);
+    expect(codesOf(await window.ask('data.take', { name: 'long.csv', bytes }))).toEqual(['file-too-large']);
+    const file = join(folder(), 'long.csv');
+    writeFileSync(file, bytes);
+    window.choose(file);
+    const preview = taken(await window.ask('data.choose', {}));
+    expect([preview?.name, preview?.size, preview?.columns.length]).toEqual(['long.csv', bytes.length, 2]);
+  });
+
+  it.each<[string, string, string]>([
+    [
+      'rows',
+      '1\n'.repeat(2_000_002),
+      '“many.csv” has some 2 000 000 rows, and tables up to 2 000 000 rows are read here.',
+    ],
+    [
+      'fields',
+      `${'1;'.repeat(21_000)}\n`.repeat(1000),
+      '“many.csv” has some 21 000 000 fields, and tables up to 20 000 000',
+    ],
+  ])('of more %s than memory holds is refused before it is read, and the program goes on', async (_, text, says) => {
+    const window = openWindow();
+    // Larger than what is sent, where need be: then it is chosen.
+    const file = join(folder(), 'many.csv');
+    writeFileSync(file, text);
+    window.choose(file);
+    const problems = taken(await window.ask('data.choose', {}))?.problems ?? [];
+    expect(problems.map(({ code }) => code)).toEqual(['table-too-large']);
+    expect(problems.map(sentence).join().replaceAll('\u202f', ' ')).toContain(says);
     expect(taken(await window.ask('data.take', { name: 'a.csv', bytes: bytesOf(smallCells) })).rows).toBe(6);
-  }, 120_000);
+  });
+
+  it('that is a project is not read as a table: one that was chosen can be opened, one that was dropped is to be chosen', async () => {
+    const window = openWindow();
+    const { file } = await withProject(window);
+    taken(await window.ask('project.close', {}));
+    const other = join(folder(), 'table.csv'); // whatever it is called
+    copyFileSync(file, other);
+    const bytes = Uint8Array.from(readFileSync(file));
+    expect(firstProblem(await window.ask('data.take', { name: 'care.steelyard', bytes }))).toEqual({
+      code: 'is-a-project',
+      at: null,
+      facts: { file: 'care.steelyard', offered: false },
+    });
+    expect(codesOf(await window.ask('project.open', { file: other }))).toEqual(['no-project']);
+    window.choose(other);
+    expect(firstProblem(await window.ask('data.choose', {}))).toEqual({
+      code: 'is-a-project',
+      at: null,
+      facts: { file: other, offered: true },
+    });
+    expect(taken(await window.ask('project.open', { file: other }))?.file).toBe(other);
+  });
 
   it('that is not there or is a folder is told so', async () => {
     const window = openWindow();
@@ -172,7 +217,7 @@ describe('a look at the cells', () => {
         omit: [{ column: 'parish', is: ['Oak'], because: 'another survey' }],
       },
     });
-    const look = taken(await window.ask('data.look', { plan, inputs }));
+    const look = unpackLook(taken(await window.ask('data.look', { plan, inputs })));
     expect(look).toMatchObject({ columns: ['parish', 'y', 'n', 'x'], used: 3, unmatched: [] });
     expect(look.files).toEqual(inputs);
     expect(
@@ -200,7 +245,7 @@ describe('a look at the cells', () => {
     const window = openWindow();
     await withProject(window);
     const demo = await demoPlan(window);
-    const look = taken(await window.ask('data.look', demo));
+    const look = unpackLook(taken(await window.ask('data.look', demo)));
     const { job } = taken(await window.ask('fit.try', demo));
     const { data, cells } = await window.resultOf(job);
     expect(look.rows).toHaveLength(data.rows);
@@ -284,5 +329,5 @@ it('a script in a label stays the text that it is', async () => {
   const window = openWindow();
   const script = '<img src=x onerror=alert(1)>';
   const inputs = [await take(window, 'cells.csv', smallCells.replace('Elm', script))];
-  expect(taken(await window.ask('data.look', { plan: smallPlan(), inputs })).rows[0]?.label).toBe(script);
+  expect(unpackLook(taken(await window.ask('data.look', { plan: smallPlan(), inputs }))).rows[0]?.label).toBe(script);
 });

@@ -1,4 +1,5 @@
 import { Worker } from 'node:worker_threads';
+import { unsaidRead } from '@core/protocol/draft';
 import { openEngine } from '@main/engine/engine';
 import { openShelf } from '@main/engine/shelf';
 import { sha256Of } from '@main/project/sha256';
@@ -108,7 +109,7 @@ describe('the engine', () => {
     const hungry = 'const all = []; for (;;) all.push(new Array(1e5).fill(1.5))';
     next = () => new Worker(hungry, { eval: true, resourceLimits: { maxOldGenerationSizeMb: 32 } });
     expect(firstProblem(await engine.ask('run', { plan, inputs: named(smallCells) }))).toMatchObject({
-      code: 'cannot-read',
+      code: 'memory-full',
       facts: { file: 'cells.csv' },
     });
     next = engineThread;
@@ -136,19 +137,10 @@ describe('the shelf', () => {
       { name: string; sha256: string; file: string },
       { name: string; sha256: string; file: string },
     ];
-    const read = {
-      encoding: null,
-      delimiter: null,
-      decimal: null,
-      group: null,
-      statuses: {},
-      missing: {},
-      footnotes: [],
-    };
     for (const { sha256, file } of [first, second]) shelf.put(sha256, text.encode(file));
-    taken(shelf.table({ ...first, read }));
+    taken(shelf.table({ ...first, read: unsaidRead }));
     expect(shelf.tidy()).toEqual([second.sha256]);
-    expect(codesOf(shelf.table({ ...second, read }))).toEqual(['file-not-found']);
+    expect(codesOf(shelf.table({ ...second, read: unsaidRead }))).toEqual(['file-not-found']);
     shelf.put(third.sha256, text.encode(third.file));
     expect([shelf.tidy(), shelf.size(third.sha256)]).toEqual([[first.sha256], 300]);
   });

@@ -34,7 +34,7 @@ const questions: { readonly [Q in Asked]: readonly string[] } = {
   'answer.cover': ['author'],
   'answer.uncover': ['author'],
   'report.pages': ['planId', 'edition'],
-  'report.note': ['place', 'text'],
+  'report.note': ['place', 'text', 'author'],
   'report.decide': ['author', 'text'],
   'report.freeze': ['planId', 'author'],
   'report.check': ['edition'],

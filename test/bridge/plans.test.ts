@@ -224,7 +224,7 @@ describe('a fit under way', () => {
     const { file } = taken(await window.ask('project.look', {})) as { file: string };
     rmSync(file);
     const { outcome, unkept } = await window.doneOf(job);
-    expect([outcome.ok, unkept?.map(({ code }) => code)]).toEqual([true, ['cannot-write']]);
+    expect([outcome.ok, unkept?.map(({ code }) => code)]).toEqual([true, ['project-gone']]);
     expect(taken(await window.ask('fit.latest', { planId })).result?.data.used).toBe(8000);
     window.choose(join(folder(), 'saved.steelyard'));
     expect(taken(await window.ask('project.save-as', {}))).toMatchObject({ name: 'saved', plans: [{ planId }] });

@@ -124,7 +124,7 @@ describe('projects', () => {
     window.choose(join(at, 'copy'));
     expect(taken(await window.ask('project.save-as', {}))).toMatchObject({ name: 'copy' });
     expect(window.suggested.at(-1)).toBe('care.steelyard');
-    taken(await window.ask('report.note', { place: 'summary', text: 'in the copy' }));
+    taken(await window.ask('report.note', { author: 'Ada', place: 'summary', text: 'in the copy' }));
     await window.close();
     const next = openWindow();
     expect(taken(await openBy(next, file))?.notes).toEqual([]);
@@ -146,7 +146,7 @@ describe('projects', () => {
       await window.ask('report.pages', { planId: 1, edition: null }),
       await window.ask('project.save-as', {}),
     ];
-    expect(refused.map(codesOf)).toEqual(refused.map(() => ['no-project']));
+    expect(refused.map(codesOf)).toEqual(refused.map(() => ['nothing-open']));
   });
 });
 
@@ -218,7 +218,7 @@ describe('a project that cannot be opened is told by what it is, and the one tha
     const [one, other] = [openWindow(), openWindow()];
     const { file } = await withProject(one);
     expect(firstProblem(await openBy(other, file))).toEqual({ code: 'file-in-use', at: null, facts: { file } });
-    taken(await one.ask('report.note', { place: 'summary', text: 'still mine' }));
+    taken(await one.ask('report.note', { author: 'Ada', place: 'summary', text: 'still mine' }));
     expect(codesOf(await openBy(other, file))).toEqual(['file-in-use']);
     await one.close();
     expect(taken(await openBy(other, file))?.notes).toHaveLength(1);
@@ -277,7 +277,7 @@ describe('a project that may only be read', () => {
       await window.ask('plan.undo', {}),
       await window.ask('plan.redo', {}),
       await window.ask('draft.keep', { text: 'x' }),
-      await window.ask('report.note', { place: 'summary', text: 'x' }),
+      await window.ask('report.note', { author: 'Ada', place: 'summary', text: 'x' }),
       await window.ask('report.decide', { author: 'Ada', text: 'x' }),
       await window.ask('report.freeze', { planId, author: 'Ada' }),
       await window.ask('report.sign-off', { edition: 1, role: 'x', author: 'Ada' }),
@@ -295,42 +295,44 @@ describe('a project whose file goes while it is open', () => {
   async function withOne() {
     const window = openWindow();
     const { file } = await withProject(window);
-    taken(await window.ask('report.note', { place: 'summary', text: 'mine' }));
+    taken(await window.ask('report.note', { author: 'Ada', place: 'summary', text: 'mine' }));
     return { window, file };
   }
-  const note = (window: TestWindow) => window.ask('report.note', { place: 'summary', text: 'more' });
+  const note = (window: TestWindow) => window.ask('report.note', { author: 'Ada', place: 'summary', text: 'more' });
 
   it.each<[string, (file: string) => void, string]>([
-    ['removed', (file) => rmSync(file), 'removed or moved'],
-    ['moved', (file) => renameSync(file, `${file}.old`), 'removed or moved'],
+    ['removed', (file) => rmSync(file), 'project-gone'],
+    ['moved', (file) => renameSync(file, `${file}.old`), 'project-gone'],
     [
       'replaced',
       (file) => {
         renameSync(file, `${file}.old`);
         copyFileSync(closedProject(), file);
       },
-      'another file was put in its place',
+      'project-replaced',
     ],
-  ])('%s: changes are refused, it is still shown whole, and can be saved under another name', async (_, go, told) => {
+  ])('%s: changes are refused, it is still shown whole, and can be saved under another name', async (_, go, code) => {
     const { window, file } = await withOne();
     go(file);
     const other = existsSync(file) ? readFileSync(file) : null;
     const problem = firstProblem(await note(window));
-    expect(problem?.code).toBe('cannot-write');
-    expect(problem && sentence(problem)).toContain(told);
-    expect(taken(await window.ask('project.look', {}))?.notes).toEqual([{ place: 'summary', text: 'mine' }]);
+    expect(problem).toEqual({ code, at: null, facts: { file } });
+    expect(problem && sentence(problem)).toContain('What is on the screen is still whole');
+    expect(taken(await window.ask('project.look', {}))?.notes).toMatchObject([{ place: 'summary', text: 'mine' }]);
     expect(taken(await window.ask('trail.read', {})).whole?.entries).toBe(2);
     const elsewhere = join(folder(), 'saved.steelyard');
     window.choose(elsewhere);
     expect(taken(await window.ask('project.save-as', {}))).toMatchObject({ name: 'saved' });
-    expect(taken(await note(window)).notes).toEqual([{ place: 'summary', text: 'more' }]);
+    expect(taken(await note(window)).notes).toMatchObject([{ place: 'summary', text: 'more' }]);
     expect(existsSync(file) ? readFileSync(file) : null).toEqual(other);
   });
 
   it('overwritten in place: changes are refused, and nothing crashes', async () => {
     const { window, file } = await withOne();
     writeFileSync(file, Buffer.alloc(readFileSync(file).length, 7));
-    expect(firstProblem(await note(window))?.code).toBe('cannot-write');
+    expect(firstProblem(await note(window))?.code).toBe('project-overwritten');
+    window.choose(join(folder(), 'saved.steelyard'));
+    expect(codesOf(await window.ask('project.save-as', {}))).toEqual(['project-overwritten']);
     for (const answer of [await window.ask('project.look', {}), await window.ask('trail.read', {})])
       expect(answer.ok || codesOf(answer)[0] === 'project-damaged').toBe(true);
     expect(taken(await window.ask('start.look', {})).recent).toHaveLength(1);
@@ -342,6 +344,19 @@ describe('a project whose file goes while it is open', () => {
     copyFileSync(file, `${file}.copy`);
     taken(await window.ask('report.decide', { author: 'Ada', text: 'kept '.repeat(40_000) }));
     writeFileSync(file, readFileSync(`${file}.copy`));
-    expect(firstProblem(await note(window))?.code).toBe('cannot-write');
+    expect(firstProblem(await note(window))?.code).toBe('project-overwritten');
+  });
+
+  it('is told unasked when it goes, once, and again when it is back', async () => {
+    const { window, file } = await withOne();
+    const told = () =>
+      window.told.flatMap((one) => (one.kind === 'file' ? [one.problems.map(({ code }) => code)] : []));
+    taken(await note(window));
+    renameSync(file, `${file}.old`);
+    await expect.poll(told, { timeout: 10_000 }).toEqual([['project-gone']]);
+    await new Promise((later) => setTimeout(later, 2000));
+    renameSync(`${file}.old`, file);
+    await expect.poll(told, { timeout: 10_000 }).toEqual([['project-gone'], []]);
+    expect((await window.ask('report.decide', { author: 'Ada', text: 'still mine' })).ok).toBe(true);
   });
 });

@@ -25,6 +25,39 @@ describe('the pages', () => {
   });
 });
 
+describe('a note', () => {
+  it('prints under its heading, with author and time, in the pages that follow the plan and in an edition that rebuilds', async () => {
+    const { window, planId, file } = await withDemo();
+    const before = taken(await window.ask('report.pages', { planId, edition: null }));
+    taken(
+      await window.ask('report.note', { place: 'variance', text: 'Sizes are final.\nSo are errors.', author: 'Ada' }),
+    );
+    const live = taken(await window.ask('report.pages', { planId, edition: null }));
+    expect(Buffer.compare(Buffer.from(live.pdf), Buffer.from(before.pdf))).not.toBe(0);
+    const noted = ({ blocks }: typeof live.document) => {
+      const at = blocks.findIndex((block) => block.kind === 'heading' && block.text === 'The variance statement');
+      return blocks.slice(at + 1, at + 3);
+    };
+    expect(noted(live.document)).toMatchObject([
+      {
+        kind: 'paragraph',
+        text: 'Note: Sizes are final.',
+        margin: [{ about: 'Note', text: expect.stringMatching(/^Ada, \d{4}-\d\d-\d\d \d\d:\d\d UTC$/) }],
+      },
+      { kind: 'paragraph', text: 'So are errors.' },
+    ]);
+    taken(await window.ask('report.freeze', { planId, author: 'Bo' }));
+    // What is noted later belongs to the next edition.
+    taken(await window.ask('report.note', { place: 'variance', text: null, author: 'Ada' }));
+    expect(taken(await window.ask('report.pages', { planId, edition: null })).pdf).toEqual(before.pdf);
+    const frozen = taken(await window.ask('report.pages', { planId, edition: 1 }));
+    expect(noted(frozen.document)).toEqual(noted(live.document));
+    expect(taken(await window.ask('report.check', { edition: 1 }))).toEqual({ number: 1, how: 'bytes', problems: [] });
+    await window.close();
+    expect(steelyard(['check', file]).status).toBe(0);
+  });
+});
+
 describe('an edition frozen in the window', () => {
   it('stands in the project with its author, keeps its pages to the byte, and is rebuilt by the command line', async () => {
     const { window, planId, file } = await withDemo();
@@ -70,10 +103,14 @@ describe('an edition frozen in the window', () => {
 describe('what is said in the report', () => {
   it('notes can be undone; decisions, sign-off and uncovering cannot', async () => {
     const { window } = await withDemo();
-    const note = (text: string | null) => window.ask('report.note', { place: 'summary', text });
-    expect(taken(await note('One.'))).toMatchObject({ notes: [{ text: 'One.' }], undo: 'change-note' });
-    taken(await note('Two.'));
-    expect(taken(await window.ask('plan.undo', {})).notes).toEqual([{ place: 'summary', text: 'One.' }]);
+    const note = (text: string | null, author: string) =>
+      window.ask('report.note', { place: 'variance', text, author });
+    expect(taken(await note('One.', 'Ada'))).toMatchObject({ notes: [{ text: 'One.' }], undo: 'change-note' });
+    expect(codesOf(await note('Nobody’s.', ' '))).toEqual(['must-be-stated']);
+    expect(taken(await note('Two.', 'Bo')).notes).toMatchObject([{ text: 'Two.', author: 'Bo' }]);
+    const back = taken(await window.ask('plan.undo', {})).notes;
+    expect(back).toMatchObject([{ place: 'variance', text: 'One.', author: 'Ada' }]);
+    expect(back[0]?.time).toMatch(/^\d{4}-\d\d-\d\dT/);
     const decided = taken(await window.ask('report.decide', { author: 'Ada', text: 'We keep it.' }));
     expect(decided).toMatchObject({ decisions: [{ author: 'Ada', text: 'We keep it.' }], undo: 'change-note' });
     expect(codesOf(await window.ask('report.decide', { author: ' ', text: 'x' }))).toEqual(['must-be-stated']);

@@ -2,7 +2,17 @@ import { mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
 import { Worker } from 'node:worker_threads';
-import type { Answers, Ask, Asked, NamedInput, ProjectLook, Told } from '@core/protocol/bridge';
+import {
+  type Answers,
+  type Ask,
+  type Asked,
+  type Heard,
+  heardOf,
+  type LatestFit,
+  type NamedInput,
+  type ProjectLook,
+  readLatest,
+} from '@core/protocol/bridge';
 import type { Outcome } from '@core/protocol/outcome';
 import type { Problem } from '@core/protocol/problems';
 import type { Result } from '@core/protocol/result';
@@ -16,7 +26,10 @@ const OWN = 'app://steelyard';
 export const resources = resolve('resources');
 export const demoFolder = join(resources, 'demo');
 
-type Done = Extract<Told, { kind: 'done' }>;
+type Done = Extract<Heard, { kind: 'done' }>;
+
+/** Answers as the page takes them in: results are read from their texts. */
+type Taken<Q extends Asked> = Q extends 'fit.latest' ? LatestFit : Answers[Q];
 
 /** A folder that is gone when the test is over. */
 export function folder(): string {
@@ -40,10 +53,10 @@ export const engineThread = () => new Worker(new URL('./engine-thread.ts', impor
 
 /** A window without a window: the real session and engine behind the real door, with choosers that answer what the test lays out. */
 export interface TestWindow {
-  readonly ask: <Q extends Asked>(question: Q, payload: Ask<Q>) => Promise<Outcome<Answers[Q]>>;
+  readonly ask: <Q extends Asked>(question: Q, payload: Ask<Q>) => Promise<Outcome<Taken<Q>>>;
   readonly askAnything: (question: string, payload: unknown, origin?: string) => Promise<Outcome<unknown>>;
   readonly profile: string;
-  readonly told: readonly Told[];
+  readonly told: readonly Heard[];
   readonly shown: readonly Standing[];
   readonly copied: readonly { readonly text: string; readonly html: string | null }[];
   /** What the next choosers answer, in order; null once it is used up. */
@@ -57,7 +70,7 @@ export interface TestWindow {
 }
 
 export function openWindow({ profile = folder(), start = engineThread } = {}): TestWindow {
-  const told: Told[] = [];
+  const told: Heard[] = [];
   const shown: Standing[] = [];
   const copied: { text: string; html: string | null }[] = [];
   const chosen: (string | null)[] = [];
@@ -75,7 +88,7 @@ export function openWindow({ profile = folder(), start = engineThread } = {}): T
       },
       copy: async (text, html) => void copied.push({ text, html }),
       tell: (one) => {
-        told.push(one);
+        told.push(heardOf(one));
         for (const look of waiting) look();
       },
       show: (standing) => void shown.push(standing),
@@ -102,7 +115,12 @@ export function openWindow({ profile = folder(), start = engineThread } = {}): T
     });
   return {
     // The door answers each question with its own answer; the test trusts the table of types.
-    ask: (question, payload) => answer(OWN, question, payload) as Promise<Outcome<never>>,
+    ask: async (question, payload) => {
+      const answered = await answer(OWN, question, payload);
+      const read =
+        answered.ok && question === 'fit.latest' ? readLatest(answered.value as Answers['fit.latest']) : null;
+      return (read === null ? answered : { ok: true, value: read }) as Outcome<never>;
+    },
     askAnything: (question, payload, origin = OWN) => answer(origin, question, payload),
     profile,
     told,

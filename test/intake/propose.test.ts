@@ -1,18 +1,8 @@
 import { Buffer } from 'node:buffer';
-import type { Read } from '@core/protocol/plan';
+import { unsaidRead as read } from '@core/protocol/draft';
 import { proposeTypes } from '@main/intake/propose';
 import { readSource } from '@main/intake/read-source';
 import { expect, it } from 'vitest';
-
-const read: Read = {
-  encoding: null,
-  delimiter: null,
-  decimal: null,
-  group: null,
-  statuses: {},
-  missing: {},
-  footnotes: [],
-};
 
 function proposals(content: string) {
   const table = readSource({ file: 'cells.csv', bytes: Buffer.from(content), read });

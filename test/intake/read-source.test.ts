@@ -1,24 +1,15 @@
 import { Buffer } from 'node:buffer';
 import { createHash } from 'node:crypto';
+import { unsaidRead } from '@core/protocol/draft';
 import type { Outcome } from '@core/protocol/outcome';
 import type { Read } from '@core/protocol/plan';
 import type { SourceTable } from '@core/protocol/source';
 import { readSource } from '@main/intake/read-source';
 import { describe, expect, it } from 'vitest';
 
-const asFound: Read = {
-  encoding: null,
-  delimiter: null,
-  decimal: null,
-  group: null,
-  statuses: {},
-  missing: {},
-  footnotes: [],
-};
-
 function reading(content: string | Uint8Array, read: Partial<Read> = {}): Outcome<SourceTable> {
   const bytes = typeof content === 'string' ? Buffer.from(content, 'utf8') : content;
-  return readSource({ file: 'cells.csv', bytes, read: { ...asFound, ...read }, at: '/data/file' });
+  return readSource({ file: 'cells.csv', bytes, read: { ...unsaidRead, ...read }, at: '/data/file' });
 }
 
 function table(content: string | Uint8Array, read: Partial<Read> = {}): SourceTable {

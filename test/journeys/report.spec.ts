@@ -168,8 +168,19 @@ describe('the report', () => {
     await drawn(page, 1);
     await governed(page, 'The variance statement').click();
     await page.getByLabel('Note on this section').fill('Discussed on 4 March with the producers of the table.');
-    await page.getByRole('button', { name: 'Keep the note' }).click();
+    const keep = page.getByRole('button', { name: 'Keep the note' });
+    expect(await keep.isDisabled()).toBe(true);
+    await page.locator('.governing').getByLabel('Author').fill('R. Vos');
+    await keep.click();
     await main(page).locator('.note', { hasText: 'Discussed on 4 March' }).waitFor();
+    // It prints under its heading, with author and time, in the report as it stands.
+    await settled(page);
+    await expect
+      .poll(() => runningText(page), soon)
+      .toContain(plain('The variance statement Note: Discussed on 4 March with the producers of the table.'));
+    expect(await runningText(page)).toMatch(/NoteR\.Vos,\d{4}-\d\d-\d\d\d\d:\d\dUTC/);
+    await drawn(page, 1);
+    await main(page).locator('.note', { hasText: 'Discussed on 4 March' }).scrollIntoViewIfNeeded();
     await opened.picture('report-note');
     await page.keyboard.press('Control+z');
     await main(page).locator('.note', { hasText: 'Discussed on 4 March' }).waitFor({ state: 'detached' });
@@ -203,7 +214,9 @@ describe('the report', () => {
     await edition.getByRole('button', { name: 'Show its pages' }).click();
     await governed(page, /^edition 1, frozen/).waitFor();
     await drawn(page, 1);
-    expect(await runningText(page)).toContain(plain('are kept: the squared residuals level off'));
+    const frozen = await runningText(page);
+    expect(frozen).toContain(plain('are kept: the squared residuals level off'));
+    expect(frozen).toContain(plain('Note: Discussed on 4 March with the producers of the table.'));
     await edition.getByRole('button', { name: 'Check it' }).click();
     await edition.getByText('result and report are the same to the last byte').waitFor();
     await edition.getByRole('button', { name: 'Sign off …' }).click();

@@ -197,7 +197,15 @@ describe('a project that cannot be written', () => {
     expect(check(file)).toBe(0);
   });
 
-  it('was taken away while open: says so at the next change, and what was accepted is where it was taken to', async () => {
+  /** Puts a decision on record; what the program says where it is refused. */
+  async function decide({ page }: Opened, text: string): Promise<void> {
+    await goTo(page, 'Report');
+    await page.getByLabel('What was decided').fill(text);
+    await page.locator('[data-part=decisions]').getByLabel('Author').fill('R. Vos');
+    await page.getByRole('button', { name: 'Put on record' }).click();
+  }
+
+  it('was taken away while open: says so unasked, what was typed stays, and all is well once it is put back', async () => {
     const file = copy();
     const opened = await launch();
     const { page } = opened;
@@ -205,20 +213,189 @@ describe('a project that cannot be written', () => {
     await fitted(page);
     const away = `${file}.away`;
     renameSync(file, away);
-    await goTo(page, 'Report');
-    await page.getByLabel('What was decided').fill('Nothing is lost.');
-    await page.locator('[data-part=decisions]').getByLabel('Author').fill('R. Vos');
-    await page.getByRole('button', { name: 'Put on record' }).click();
-    const said = await page.getByRole('alert').innerText();
-    expect(said).toContain('care.steelyard');
-    expect(said).toMatch(/no longer|moved|taken|gone/);
+    const trouble = page.getByRole('alert');
+    await trouble.getByText('was removed or moved while it was open').waitFor();
+    expect(await trouble.innerText()).toContain('save a copy under another name, or put the file back');
+    await decide(opened, 'Nothing is lost.');
+    await page.waitForTimeout(300);
+    expect(await trouble.count()).toBe(1); // told once
     await opened.picture('trouble-taken-away');
     expect(await page.getByLabel('What was decided').inputValue()).toBe('Nothing is lost.');
     renameSync(away, file);
+    await trouble.waitFor({ state: 'detached' });
     await page.getByRole('button', { name: 'Put on record' }).click();
     await page.locator('.decision', { hasText: 'Nothing is lost.' }).waitFor();
     await page.evaluate(() => window.steelyard.ask('project.close', {}));
     expect(check(file)).toBe(0);
+  });
+
+  it('was replaced while open: says so, leaves the other file alone, and is saved whole under another name', async () => {
+    const file = copy();
+    const opened = await launch();
+    const { page } = opened;
+    expect(await openFile(opened, file)).toBe('');
+    await fitted(page);
+    await decide(opened, 'Put down before.');
+    await page.locator('.decision', { hasText: 'Put down before.' }).waitFor();
+    const other = copy();
+    const theirs = hashOf(other);
+    renameSync(other, file);
+    await page.getByRole('alert').getByText('Another file was put in the place of').waitFor();
+    await page.getByLabel('What was decided').fill('Typed after.');
+    await opened.picture('trouble-replaced');
+    const mine = join(folder(), 'mine.steelyard');
+    await opened.choose(mine);
+    await page.getByRole('alert').getByRole('button', { name: 'Save a copy as' }).click();
+    await page.getByRole('alert').waitFor({ state: 'detached' });
+    await expect.poll(async () => (await look(opened)).file, { timeout: 20_000 }).toBe(mine);
+    expect(await page.getByLabel('What was decided').inputValue()).toBe('Typed after.');
+    await page.getByRole('button', { name: 'Put on record' }).click();
+    await page.locator('.decision', { hasText: 'Typed after.' }).waitFor();
+    expect((await look(opened)).decisions.map(({ text }) => text)).toEqual(['Put down before.', 'Typed after.']);
+    await page.evaluate(() => window.steelyard.ask('project.close', {}));
+    expect([check(mine), hashOf(file)]).toEqual([0, theirs]);
+  });
+
+  it('was removed while open: says so, and is saved whole under another name', async () => {
+    const file = copy();
+    const opened = await launch();
+    const { page } = opened;
+    expect(await openFile(opened, file)).toBe('');
+    await fitted(page);
+    rmSync(file);
+    await page.getByRole('alert').getByText('was removed or moved while it was open').waitFor();
+    const mine = join(folder(), 'mine.steelyard');
+    await opened.choose(mine);
+    await page.getByRole('alert').getByRole('button', { name: 'Save a copy as' }).click();
+    await expect.poll(async () => (await look(opened)).file, { timeout: 20_000 }).toBe(mine);
+    await decide(opened, 'It goes on.');
+    await page.locator('.decision', { hasText: 'It goes on.' }).waitFor();
+    await page.evaluate(() => window.steelyard.ask('project.close', {}));
+    expect(check(mine)).toBe(0);
+  });
+
+  it('was written over while open: says so, and writes nothing more to it', async () => {
+    const file = copy();
+    const opened = await launch();
+    const { page } = opened;
+    expect(await openFile(opened, file)).toBe('');
+    await fitted(page);
+    const theirs = Buffer.from('Not a project any more.\n'.repeat(20_000));
+    writeFileSync(file, theirs);
+    await page.getByRole('alert').getByText('Another program wrote over').waitFor();
+    await opened.picture('trouble-overwritten');
+    await decide(opened, 'Too late.');
+    expect(await page.getByRole('alert').innerText()).toContain('go back to a copy');
+    await page.evaluate(() => window.steelyard.ask('project.close', {}));
+    expect(readFileSync(file).equals(theirs)).toBe(true);
+  });
+});
+
+describe('a file that is no table', () => {
+  /** Lets a file of the disk go over the page, as the desktop does. */
+  async function drop({ page }: Opened, file: string): Promise<void> {
+    const cdp = await page.context().newCDPSession(page);
+    const data = { items: [], files: [file], dragOperationsMask: 1 };
+    for (const type of ['dragEnter', 'dragOver', 'drop'] as const)
+      await cdp.send('Input.dispatchDragEvent', { type, x: 400, y: 400, data });
+    await cdp.detach();
+  }
+
+  async function inNewProject(): Promise<Opened> {
+    const opened = await launch();
+    await opened.choose(join(folder(), 'new.steelyard'));
+    await opened.page.getByRole('button', { name: 'New project …' }).click();
+    await opened.page.getByRole('button', { name: 'Choose a file' }).waitFor();
+    return opened;
+  }
+
+  it('but 200 MB of text is refused within seconds, chosen or dropped, with its size and what to do', async () => {
+    const file = join(folder(), 'diary.txt');
+    const pen = openSync(file, 'w');
+    const text = Buffer.from('It rained again today, and nobody came. '.repeat(25_000));
+    for (let written = 0; written < 200_000_000; written += text.length) writeSync(pen, text);
+    closeSync(pen);
+    const opened = await inNewProject();
+    const { page } = opened;
+    await opened.choose(file);
+    const soon = { timeout: 4000 };
+    await page.getByRole('button', { name: 'Choose a file' }).click();
+    await page
+      .getByRole('alert')
+      .getByText(/has 200 megabytes, and files up to 100 megabytes are read/)
+      .waitFor(soon);
+    await opened.picture('trouble-large');
+    await page.getByRole('button', { name: 'Put away' }).click();
+    await drop(opened, file);
+    await page
+      .getByRole('alert')
+      .getByText(/has 200 megabytes, and files up to 32 megabytes are read/)
+      .waitFor(soon);
+    // The window goes on at once.
+    await goTo(page, 'Trail');
+  });
+
+  it('but a project is offered as one, chosen or dropped', async () => {
+    const file = copy();
+    const opened = await inNewProject();
+    const { page } = opened;
+    await drop(opened, file);
+    const trouble = page.getByRole('alert');
+    await trouble.getByText('“care.steelyard” is a project of this program, and not a table').waitFor();
+    await page.getByRole('button', { name: 'Put away' }).click();
+    await opened.choose(file);
+    await page.getByRole('button', { name: 'Choose a file' }).click();
+    await trouble.getByText('is a project of this program, and not a table').waitFor();
+    await opened.picture('trouble-project-as-table');
+    await trouble.getByRole('button', { name: 'Open it as a project' }).click();
+    await fitted(page);
+    expect((await look(opened)).file).toBe(file);
+  });
+
+  it('is told so; a table that is let go over any place is taken in under Data', async () => {
+    const opened = await inNewProject();
+    const { page } = opened;
+    await goTo(page, 'Trail');
+    const table = join(folder(), 'dropped.csv');
+    writeFileSync(table, 'parish,y,n,x\nElm,1.5,10,1\nOak,2.5,20,2\nAsh,2.9,30,3\nFir,4.4,40,4\nYew,5.2,50,5\n');
+    await drop(opened, table);
+    await page.getByRole('heading', { name: 'What each column is' }).waitFor();
+    await page.getByText('dropped.csv has 5 data rows in 4 columns').waitFor();
+    await opened.picture('trouble-dropped');
+    const letter = join(folder(), 'picture.png');
+    writeFileSync(
+      letter,
+      Uint8Array.from({ length: 9000 }, (_, i) => (i * 37) % 256),
+    );
+    await drop(opened, letter);
+    await page.getByRole('dialog').getByRole('alert').getByText('“picture.png”').waitFor();
+  });
+});
+
+describe('a plan that is not finished', () => {
+  it('has its way back after the project was closed and opened again', async () => {
+    const file = join(folder(), 'draft.steelyard');
+    const opened = await launch();
+    const { page } = opened;
+    await opened.choose(file);
+    await page.getByRole('button', { name: 'New project …' }).click();
+    await page.getByRole('button', { name: /^Paste a table/ }).click();
+    await page.getByRole('main').locator('textarea').first().fill('parish,y,n\nElm,1.5,10\nOak,2.5,20\nAsh,2.9,30\n');
+    await page.getByRole('button', { name: /^Take it in/ }).click();
+    const row = page.getByRole('row', { name: /^parish/ });
+    await row.getByRole('button', { name: 'names the cells' }).click();
+    await page.getByRole('region', { name: 'What is “parish”?' }).getByText('something else').click();
+    await row.getByRole('button', { name: 'something else' }).waitFor();
+    await page.getByRole('button', { name: 'Undo: what the columns are' }).waitFor();
+    await page.getByRole('button', { name: /^draft/ }).click();
+    await page.getByRole('button', { name: 'Close the project' }).click();
+    await page.getByRole('button', { name: 'draft', exact: true }).click();
+    await goTo(page, 'Data');
+    await row.getByRole('button', { name: 'something else' }).waitFor();
+    await page.getByRole('button', { name: 'Undo: what the columns are' }).click();
+    await row.getByRole('button', { name: 'names the cells' }).waitFor();
+    await page.getByRole('button', { name: 'Redo: what the columns are' }).click();
+    await row.getByRole('button', { name: 'something else' }).waitFor();
   });
 });
 

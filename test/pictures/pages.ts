@@ -1,7 +1,8 @@
 // `npm run pictures`: the pages of the demo's report and every screen as pictures for the README. Needs pdftoppm (Debian: poppler-utils).
 import { spawnSync } from 'node:child_process';
-import { mkdirSync, readdirSync, rmSync } from 'node:fs';
+import { mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { join, resolve } from 'node:path';
+import { withPalette } from './palette.ts';
 import { takeScreens } from './screens.ts';
 
 const root = resolve(import.meta.dirname, '../..');
@@ -18,4 +19,8 @@ rmSync(pictures, { recursive: true, force: true });
 mkdirSync(pictures, { recursive: true });
 run('pdftoppm', ['-r', '72', '-png', join(out, 'report.pdf'), join(pictures, 'report')]);
 await takeScreens();
+for (const name of readdirSync(pictures)) {
+  const file = join(pictures, name);
+  writeFileSync(file, withPalette(readFileSync(file)));
+}
 console.log(`${readdirSync(pictures).length} pictures in resources/pictures`);

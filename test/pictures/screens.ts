@@ -1,4 +1,4 @@
-// Every screen's picture for the README, from the demo, light; Fit and Report in dark too. Part of `npm run pictures`; alone: node test/pictures/screens.ts
+// Every screen's picture for the README, from the demo, light; Fit in dark too. Part of `npm run pictures`; alone: node test/pictures/screens.ts
 import { mkdirSync } from 'node:fs';
 import { join, resolve } from 'node:path';
 import type { Page } from 'playwright-core';
@@ -22,15 +22,28 @@ const at = (selector: string) => async (page: Page) => {
   await section.evaluate((element) => element.scrollIntoView({ block: 'start' }));
 };
 
+/** The same, with what governs a phrase of it opened. */
+const opens = (selector: string, phrase: string) => async (page: Page) => {
+  await at(selector)(page);
+  await page.locator(selector).getByRole('button', { name: phrase, exact: true }).click();
+  await page.locator('.governing').waitFor();
+};
+
 const pictures: readonly Picture[] = [
   { name: 'data', place: 'Data' },
-  { name: 'data-register', place: 'Data', first: at('[data-part=register]') },
+  { name: 'data-register', place: 'Data', first: at('h2:has-text("Attendance")') },
   { name: 'variance', place: 'Variance' },
+  {
+    name: 'variance-parts',
+    place: 'Variance',
+    first: opens('[data-part=structure]', 'one answer’s variance over the number of respondents'),
+  },
   { name: 'variance-squared-residuals', place: 'Variance', first: at('[data-figure=squared-residuals]') },
   { name: 'fit', place: 'Fit' },
   { name: 'fit-price', place: 'Fit', first: at('[data-part=price]') },
   { name: 'fit-beam', place: 'Fit', first: at('[data-figure=beam]') },
   { name: 'fit-dark', place: 'Fit', dark: true },
+  { name: 'fit-evidence', place: 'Fit', first: at('[data-part=evidence]') },
   { name: 'report', place: 'Report' },
   {
     name: 'report-sections',
@@ -40,7 +53,6 @@ const pictures: readonly Picture[] = [
       await page.locator('.governing').waitFor();
     },
   },
-  { name: 'report-dark', place: 'Report', dark: true },
   { name: 'trail', place: 'Trail' },
 ];
 

@@ -105,7 +105,7 @@ describe('the frozen file of layout 10', () => {
     expect(project.plans()).toMatchObject([{ planId: 1, name: 'Main', inputs: [{ name: 'cells.csv' }] }]);
     expect(titleOf(project, 1)).toBe('second');
     expect(project.ways()).toEqual({ undo: 'change-note', redo: 'title' });
-    expect(project.notes()).toEqual([{ place: 'summary', text: 'A note.' }]);
+    expect(project.notes()).toMatchObject([{ place: 'summary', text: 'A note.' }]);
     expect(project.decisions()).toMatchObject([{ author: 'Ada Müller', text: 'Both cells are kept.' }]);
     expect(project.signOffs()).toMatchObject([{ edition: 1, role: 'reviewer', author: 'Bo' }]);
     expect(project.editions()).toMatchObject([{ number: 1, facts: { author: 'Ada Müller', project: 'v10' } }]);

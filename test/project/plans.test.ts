@@ -140,7 +140,7 @@ describe('undo and redo', () => {
     expect(again.trail()).toHaveLength(entries + 3);
     expect(again.trail().at(-1)).toMatchObject({ action: 'redone', facts: { step: 'change-note' } });
     expect([again.plans()[0]?.name, titleOf(again, planId)]).toEqual(['Final', '1']);
-    expect(again.notes()).toEqual([{ place: 'summary', text: 'One ‘word’ more.' }]);
+    expect(again.notes()).toMatchObject([{ place: 'summary', text: 'One ‘word’ more.', author: 'Ada' }]);
     expect(codeOf(again.verifyTrail())).toBe('ok');
     again.close();
   });

@@ -51,6 +51,25 @@ describe('proposeRoles', () => {
     });
   });
 
+  it('lets a number of few whole values name no cell: it is what its name says, or a category; texts with leading zeros name cells', () => {
+    const few = { type: 'category', reason: 'few-whole-numbers' } as const;
+    expect(
+      rolesOf([
+        column('parish', ['Arlow Green', 'Arlow Green', 'Brackwater']),
+        column('wave', ['1', '2', '1'], few),
+        column('n', ['10', '20', '10'], few),
+        column('code', ['01', '02', '03'], { type: 'category', reason: 'leading-zeros' }),
+        column('mean', ['1.5', '2.5', '3.5']),
+      ]),
+    ).toEqual({
+      parish: 'label/none/texts-name-cells',
+      wave: 'other/category/left-over',
+      n: 'size/none/name',
+      code: 'label/none/texts-name-cells',
+      mean: 'mean/none/name',
+    });
+  });
+
   it('takes a column with marks and footnotes between its numbers for one of numbers, and a blank one for none', () => {
     const hours = column('mean_hours', ['8,24', 'c', '10,43*', 'n.v.', '9,41'], {
       type: 'text',

@@ -1,4 +1,5 @@
 import { unavailable } from '@core/available';
+import { noRoles } from '@core/protocol/draft';
 import { isOffered, isOfferedInference, lackingIn, sameVariance } from '@core/protocol/offered-parts';
 import type { Inference, Part, Plan, Roles } from '@core/protocol/plan';
 import {
@@ -14,20 +15,7 @@ import { proposalReason } from '@core/words/screen-structure';
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 
-const noRoles: Roles = {
-  label: null,
-  outcome: 'y',
-  outcomeUnit: 'number',
-  size: null,
-  error: null,
-  errorKind: 'se',
-  errorLevel: null,
-  count: null,
-  exposure: null,
-  per: 1,
-  designEffect: null,
-  withinSd: null,
-};
+const bare: Roles = { ...noRoles, outcome: 'y' };
 
 const open: Together = { kind: 'open' };
 
@@ -46,7 +34,7 @@ describe('proposeStructure', () => {
   it('proposes size and a between part for means of respondents where the rest is open', () => {
     const { variance, wished, beside } = proposeStructure(
       { origin: 'respondents', beyond: 'open', together: open },
-      { ...noRoles, size: 'n' },
+      { ...bare, size: 'n' },
     );
     expect(variance.parts.map(({ kind }) => kind)).toEqual(['per-size', 'between']);
     expect(wished).toBeNull();
@@ -54,7 +42,7 @@ describe('proposeStructure', () => {
   });
 
   it('takes given errors as they stand, and asks for a factor only where that was the answer', () => {
-    const roles = { ...noRoles, error: 'se' };
+    const roles = { ...bare, error: 'se' };
     const scaleFor = (origin: Origin) =>
       proposeStructure({ origin, beyond: 'no', together: open }, roles).variance.parts;
     expect(scaleFor('own-error')).toMatchObject([{ kind: 'given', scale: 'fixed' }]);
@@ -62,7 +50,7 @@ describe('proposeStructure', () => {
   });
 
   it('adds no between part to a constant variance, from which it could not be told', () => {
-    const { variance, reasons } = proposeStructure({ origin: 'complete', beyond: 'yes', together: open }, noRoles);
+    const { variance, reasons } = proposeStructure({ origin: 'complete', beyond: 'yes', together: open }, bare);
     expect(variance.parts).toHaveLength(1);
     expect(reasons.beyond).toEqual(['between-in-constant']);
   });
@@ -70,7 +58,7 @@ describe('proposeStructure', () => {
   it('keeps what it cannot fit as a wish and names what is lacking', () => {
     const { variance, wished, lacking } = proposeStructure(
       { origin: 'share', beyond: 'yes', together: { kind: 'group', by: ['region'] } },
-      { ...noRoles, outcomeUnit: 'share', size: 'n' },
+      { ...bare, outcomeUnit: 'share', size: 'n' },
     );
     expect(variance.parts.map(({ kind }) => kind)).toEqual(['per-size', 'between']);
     expect(wished?.parts.map(({ kind }) => kind)).toEqual(['binomial', 'between', 'shared']);
@@ -100,7 +88,7 @@ describe('proposeStructure', () => {
         fc.record({ size: column, error: column }),
         fc.constantFrom({ outcome: 'y', count: null, exposure: null }, { outcome: null, count: 'k', exposure: 'e' }),
         (origin, beyond, how, measured, of) => {
-          const roles: Roles = { ...noRoles, ...measured, ...of };
+          const roles: Roles = { ...bare, ...measured, ...of };
           const found = proposeStructure({ origin, beyond, together: how }, roles);
           const plan = planWith(roles, found.variance);
           expect(unavailable({ ...plan, beside: [...found.beside] })).toEqual([]);
@@ -115,15 +103,15 @@ describe('proposeStructure', () => {
 
 describe('likelyAnswers and answersOf', () => {
   it('read the origin off the roles', () => {
-    expect(likelyAnswers({ ...noRoles, error: 'se', size: 'n' }).origin).toBe('own-error');
-    expect(likelyAnswers({ ...noRoles, outcome: null, count: 'k', exposure: 'e' }).origin).toBe('count');
-    expect(likelyAnswers({ ...noRoles, outcome: null, count: 'k', size: 'n' }).origin).toBe('share');
-    expect(likelyAnswers({ ...noRoles, size: 'n' }).origin).toBe('respondents');
-    expect(likelyAnswers(noRoles).origin).toBe('unknown');
+    expect(likelyAnswers({ ...bare, error: 'se', size: 'n' }).origin).toBe('own-error');
+    expect(likelyAnswers({ ...bare, outcome: null, count: 'k', exposure: 'e' }).origin).toBe('count');
+    expect(likelyAnswers({ ...bare, outcome: null, count: 'k', size: 'n' }).origin).toBe('share');
+    expect(likelyAnswers({ ...bare, size: 'n' }).origin).toBe('respondents');
+    expect(likelyAnswers(bare).origin).toBe('unknown');
   });
 
   it('read a stated structure back to the answers that propose it', () => {
-    const roles = { ...noRoles, size: 'n' };
+    const roles = { ...bare, size: 'n' };
     const stated = proposeStructure({ origin: 'respondents', beyond: 'yes', together: { kind: 'no' } }, roles).variance;
     const answers = answersOf({ variance: stated, roles });
     expect(answers).toEqual({ origin: 'respondents', beyond: 'yes', together: { kind: 'no' } });

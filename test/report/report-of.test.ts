@@ -126,6 +126,34 @@ describe('a report', () => {
     expect(document.author).toBe('Ada Weiss');
   });
 
+  it('sets each note under its heading, one on page one below the title lines, and one on a section that is left out at the end of the record', () => {
+    const time = '2026-03-01T09:30:00Z';
+    const notes = [
+      { place: 'page-one', text: 'For the board.', author: 'Ada', time },
+      { place: 'influence', text: 'First line.\n\n Second line. ', author: null, time },
+      { place: 'evidence', text: 'Kept for the appendix.', author: 'Ben', time },
+    ];
+    const plan = { ...schools.plan, report: { ...schools.plan.report, omit: ['evidence'] } };
+    const { blocks } = reportOf({ result: { ...schools, plan }, edition: null, notes });
+    const plainly = reportOf({ result: { ...schools, plan }, edition: null });
+    const at = (text: string) => blocks.findIndex((block) => 'text' in block && block.text === text);
+    const own = (from: number, to: number) =>
+      blocks.slice(from, to).map((block) => ('text' in block ? block.text : ''));
+    const page = at('Note: For the board.');
+    expect(blocks.slice(0, page).map(({ kind }) => kind)).toEqual(['heading', 'paragraph']);
+    expect(blocks[page]).toMatchObject({ margin: [{ about: 'Note', text: 'Ada, 2026-03-01 09:30 UTC' }] });
+    const influence = at('Which cells carry the answer');
+    expect(own(influence + 1, influence + 3)).toEqual(['Note: First line.', 'Second line.']);
+    expect(blocks[influence + 1]).toMatchObject({ margin: [{ text: '2026-03-01 09:30 UTC' }] });
+    const end = at('What averages cannot say');
+    expect(own(end - 1, end)).toEqual([
+      'Note on “Evidence about the structure”, which this report leaves out: Kept for the appendix.',
+    ]);
+    // Nothing else moves.
+    const added = new Set([page, influence + 1, influence + 2, end - 1]);
+    expect(blocks.filter((_, i) => !added.has(i))).toEqual(plainly.blocks);
+  });
+
   it('withholds a p value on fewer than four degrees of freedom, and says so', () => {
     const result = resultOfTable('a,n,y\np,10,1.2\nq,50,2.4\nr,90,1.9\n');
     const document = report(result);

@@ -15,16 +15,22 @@ export class Pages {
   problems = $state.raw<readonly Problem[]>([]);
   /** The bytes are there, but could not be drawn. */
   undrawn = $state(false);
+  /** Setting them was stopped by hand. */
+  stopped = $state(false);
   #turn = 0;
 
   /** name: what the pages are of, for `of`. */
   async fetch({ planId, edition, name }: { planId: number; edition: number | null; name: string }): Promise<void> {
     const turn = ++this.#turn;
     this.setting = true;
+    this.stopped = false;
     const outcome = await ask('report.pages', { planId, edition });
     if (turn !== this.#turn) return;
     if (outcome.ok) await this.#take(outcome.value, turn);
-    else this.problems = outcome.problems.filter(({ code }) => code !== 'cancelled');
+    else {
+      this.problems = outcome.problems.filter(({ code }) => code !== 'cancelled');
+      this.stopped = this.problems.length === 0;
+    }
     if (turn !== this.#turn) return;
     this.setting = false;
     if (outcome.ok) this.of = name;
