@@ -1,25 +1,30 @@
 import { unavailable } from './available';
 import type { Fitted } from './estimate/fitted';
 import { beamOf } from './evidence/beam';
+import { bootstrapsOf, withBootstraps } from './evidence/bootstraps';
 import { breakEvenOf } from './evidence/break-even';
 import { carriedByOf } from './evidence/carried-by';
 import { cautionsOf } from './evidence/cautions';
 import { cellResultsOf } from './evidence/cell-results';
+import { commonCorrelationOf } from './evidence/common-correlation';
 import { exponentScanOf } from './evidence/exponent-scan';
 import { judgeOf } from './evidence/judge';
+import { limitsOf } from './evidence/limits';
 import { overturnOf } from './evidence/overturn';
 import { pricesOf, squareOf } from './evidence/price';
 import { selfChecksOf } from './evidence/self-checks';
 import { structureEvidence } from './evidence/structure-evidence';
+import { whatItTakesOf } from './evidence/what-it-takes';
 import { betweenRulesOf } from './inference/between-rules';
 import { checkModel, type Model } from './inference/check-model';
 import { fitResultOf } from './inference/fit-result';
 import { fitChosen, fitRivals, type RivalFit } from './inference/fits';
+import { individualLevelOf } from './inference/individual-level';
 import { inferenceOf } from './inference/inferred';
 import { intraclassOf } from './inference/intraclass';
 import { likelihoodsOf } from './inference/likelihoods';
 import { questionsOf } from './inference/questions';
-import { robustBeside } from './inference/robust';
+import { robustBeside } from './inference/robust-beside';
 import { done, type Outcome, refuse, refuseAll } from './protocol/outcome';
 import type { Plan } from './protocol/plan';
 import type { Result } from './protocol/result';
@@ -43,9 +48,9 @@ export function analyse(asked: { readonly plan: Plan; readonly cells: Cells; rea
   hooks.progress('fit', 0.1);
   const fitted = fitChosen({ plan, hooks, model: model.value });
   if (!fitted.ok) return fitted;
-  const rivals = fitRivals({ plan, hooks, model: model.value });
+  const rivals = fitRivals({ plan, hooks: within(hooks, 0.15, 0.3), model: model.value, chosen: fitted.value });
   if (!rivals.ok) return rivals;
-  return resultOf({ plan, hooks, model: model.value, fitted: fitted.value, rivals: rivals.value });
+  return resultOf({ ...asked, model: model.value, fitted: fitted.value, rivals: rivals.value });
 }
 
 /** Hooks for a part of the path: its own share of 0 to 1 as a share of the whole. */
@@ -55,6 +60,8 @@ function within(hooks: Hooks, from: number, to: number): Hooks {
 
 function resultOf(fits: {
   readonly plan: Plan;
+  /** As the data stage left them, before any outcome scale. */
+  readonly cells: Cells;
   readonly model: Model;
   readonly fitted: Fitted;
   readonly rivals: readonly RivalFit[];
@@ -63,14 +70,17 @@ function resultOf(fits: {
   const { plan, model, fitted, rivals, hooks } = fits;
   const { cells, known, design } = model;
   const { level } = plan.inference;
-  const inferred = inferenceOf({ fitted, cells, plan });
+  const inferred = inferenceOf({ fitted, cells, plan, hooks });
   if (!inferred.ok) return inferred;
   const likelihoods = likelihoodsOf(fitted);
   const { coefficients } = inferred.value;
   hooks.progress('evidence', 0.3);
-  const evidence = structureEvidence({ fitted, cells, plan, design, hooks: within(hooks, 0.3, 0.6) });
+  const tested = structureEvidence({ fitted, cells, plan, design, hooks: within(hooks, 0.3, 0.55) });
+  const bootstraps = bootstrapsOf({ fitted, evidence: tested, hooks: within(hooks, 0.55, 0.6) });
   hooks.progress('sensitivity', 0.6);
-  const scan = exponentScanOf({ fitted, cells, plan, hooks: within(hooks, 0.6, 0.7) });
+  const scan = exponentScanOf({ fitted, cells, plan, hooks: within(hooks, 0.6, 0.65) });
+  const limits = limitsOf({ ...fits, coefficients, hooks: within(hooks, 0.65, 0.7) });
+  const evidence = withBootstraps(tested, bootstraps);
   const pieces = {
     data: cells.data,
     fit: fitResultOf({
@@ -78,9 +88,9 @@ function resultOf(fits: {
       inferred: inferred.value,
       cells,
       plan,
-      carriedBy: carriedByOf({ fitted, cells }),
+      carriedBy: carriedByOf({ fitted, cells, plan }),
       likelihoods,
-      hooks,
+      hooks: within(hooks, 0.7, 0.72),
     }),
     robustBeside: robustBeside(fitted),
     ...cellResultsOf({ fitted, cells }),
@@ -89,8 +99,8 @@ function resultOf(fits: {
     betweenRules: betweenRulesOf(fitted, level, hooks),
     beam: beamOf({ fitted, labels: cells.labels, judge: judgeOf(cells, plan) }),
     overturn: overturnOf({
-      ...{ fitted, cells, plan, coefficients, rivals, ends: scan.ends },
-      hooks: within(hooks, 0.7, 0.8),
+      ...{ fitted, cells, plan, coefficients, rivals, ends: scan.ends, limits: limits.changes },
+      hooks: within(hooks, 0.72, 0.8),
     }),
     selfChecks: selfChecksOf({ fitted, cells, plan, rivals, hooks: within(hooks, 0.8, 0.9) }),
   };
@@ -102,7 +112,7 @@ function resultOf(fits: {
     data: pieces.data,
     fit: pieces.fit,
     robustBeside: pieces.robustBeside,
-    individualLevel: null,
+    individualLevel: individualLevelOf({ plan, cells, design, response: model.response }),
     cells: pieces.cells,
     effectiveCells: pieces.effectiveCells,
     beside: pieces.beside,
@@ -111,17 +121,24 @@ function resultOf(fits: {
     intraclass: intraclassOf(likelihoods, level),
     evidence,
     betweenRules: pieces.betweenRules,
-    questions: questionsOf({ plan, fitted, inferred: inferred.value, known }),
+    questions: questionsOf({ plan, fitted, inferred: inferred.value, known, cells }),
     beam: pieces.beam,
     exponentScan: scan.scan,
     exponentSupport: scan.support,
-    bounds: [],
-    commonCorrelation: [],
-    whatItTakes: null,
-    bootstrapTau2: null,
+    bounds: limits.bounds,
+    commonCorrelation: commonCorrelationOf({ fitted, plan }),
+    whatItTakes: whatItTakesOf({ fitted, plan, coefficients }),
+    bootstrapTau2: bootstraps.length > 0 ? bootstraps : null,
     overturn: pieces.overturn,
     selfChecks: pieces.selfChecks,
-    cautions: cautionsOf({ plan, cells, fitted, pieces, hardlySeparate: model.hardlySeparate }),
+    cautions: cautionsOf({
+      plan,
+      cells,
+      fitted,
+      pieces: { ...pieces, bounds: limits.bounds },
+      hardlySeparate: model.hardlySeparate,
+      limits: limits.facts,
+    }),
     made: { version: VERSION },
   });
 }

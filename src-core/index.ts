@@ -1,5 +1,7 @@
 /** What src-main takes of core besides plain shapes and words. The path itself is analyse.ts, for the engine alone. */
 export { checkModel } from './inference/check-model';
+export { invited as invitedToKernels, load as loadKernels } from './kernels/kernels';
+export { helpWith as helpWithKernels, type Invitation } from './kernels/team';
 export { readPlan } from './protocol/read';
 export { type EditionFacts, type NoteFacts, reportOf } from './report/report-of';
 export { type Declarations, declarationsFor, isSetAside, withoutMarks } from './table/declarations';

@@ -11,7 +11,9 @@ const run = (script: string, args: readonly string[]) =>
   0;
 
 const count = { passed: 0, failed: 0, skipped: 0 };
-const built = run('electron-vite/bin/electron-vite.js', ['build', '--logLevel', 'warn']);
+const built =
+  run('assemblyscript/bin/asc.js', ['--config', 'src-core/kernels/source/asconfig.json']) &&
+  run('electron-vite/bin/electron-vite.js', ['build', '--logLevel', 'warn']);
 count[built ? 'passed' : 'failed']++;
 console.log(`${built ? 'ok    ' : 'FAILED'} build`);
 

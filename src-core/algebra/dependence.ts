@@ -33,11 +33,15 @@ function lengthOf(column: Float64Array): number {
   return Math.sqrt(sum);
 }
 
+/** The first column that the earlier ones explain, by its pivot on the triangle as a share of its length; -1 where none is. */
+export function dependentAt(triangle: readonly Float64Array[], tolerance: number): number {
+  return triangle.findIndex((column, j) => Math.abs(column[j] as number) <= tolerance * lengthOf(column));
+}
+
 /** The first column that the earlier ones explain, with those that explain it; null where none does. */
 export function dependenceOf(columns: readonly Decimals[], { triangle }: Reflected): number[] | null {
-  const tolerance = rankTolerance(columns[0]?.high.length ?? 0, columns.length);
+  const at = dependentAt(triangle, rankTolerance(columns[0]?.high.length ?? 0, columns.length));
   const lengths = triangle.map(lengthOf);
-  const at = triangle.findIndex((column, j) => Math.abs(column[j] as number) <= tolerance * (lengths[j] as number));
   if (at < 0) return null;
   if (lengths[at] === 0) return [at];
   const y = columns[at] as Decimals;

@@ -51,7 +51,8 @@ export function leveragesOf(basis: readonly Float64Array[], cells: number): Floa
   const sums = new Float64Array(cells);
   for (const vector of basis)
     for (let g = 0; g < cells; g++) sums[g] = (sums[g] as number) + (vector[g] as number) * (vector[g] as number);
-  return sums.map((h) => Math.min(h, 1));
+  for (let g = 0; g < cells; g++) if ((sums[g] as number) > 1) sums[g] = 1;
+  return sums;
 }
 
 function clear(vector: Float64Array, ...bases: readonly (readonly Float64Array[])[]): number {

@@ -73,7 +73,8 @@ function leftOver(columns: readonly Decimals[], y: Decimals, solution: Decimals)
   return left;
 }
 
-function relativeSize(step: Float64Array, solution: Float64Array): number {
+/** The largest correction as a share of the largest of what is corrected; 0 where nothing is corrected. */
+export function relativeSize(step: Float64Array, solution: Float64Array): number {
   let largest = 0;
   let scale = 0;
   for (let j = 0; j < step.length; j++) {

@@ -1,4 +1,5 @@
 import type { Decimals } from '../numbers/decimals';
+import type { Factored } from './factored';
 import { largestOf, powerOfFourBelow, powerOfTwoBelow } from './powers-of-two';
 import { type WideNumber, wideQuotient, wideRoot, wideTimes } from './wide';
 
@@ -12,8 +13,21 @@ export interface Whitened {
   readonly columnScale: Float64Array;
   readonly yScale: number;
   readonly rootScale: number;
-  /** Root of the variance, divided by rootScale: takes a whitened residual back. */
-  readonly roots: Float64Array;
+  /** Root of the variance, divided by rootScale: takes a whitened residual back. Null where cells are correlated. */
+  readonly roots: Float64Array | null;
+}
+
+/**
+ * Whitens a design and a response under correlated errors, P^-1 x with Omega = P P'. Columns, y and what throws as in `whitenColumns`; nothing is
+ * missing. factor: of Omega.
+ */
+export function whitenThrough(model: {
+  readonly columns: readonly Decimals[];
+  readonly y: Decimals;
+  readonly factor: Factored;
+}): Whitened {
+  const parts = [...model.columns, model.y].map((column) => whitenOne(column, model.factor.whiten));
+  return { ...scaledParts(parts), rootScale: 1, roots: null };
 }
 
 /**
@@ -31,36 +45,60 @@ export function whitenColumns(model: {
   if (!variances.every((v) => v > 0 && v < Infinity)) throw new RangeError('a variance is not finite and above 0');
   const { power, root: rootScale } = powerOfFourBelow(largestOf(variances));
   const { roots, inverses } = rootsOf(variances, power);
-  const parts = [...model.columns, model.y].map((column) => whitenOne(column, inverses));
-  const last = parts.pop() as { column: Decimals; scale: number };
+  const whiten = inverses && ((column: Decimals) => wideTimes(column, inverses));
+  const parts = [...model.columns, model.y].map((column) => whitenOne(column, whiten));
+  return { ...scaledParts(parts), rootScale, roots };
+}
+
+interface ScaledColumn {
+  readonly column: Decimals;
+  readonly scale: number;
+}
+
+function scaledParts(parts: readonly ScaledColumn[]): Pick<Whitened, 'columns' | 'y' | 'columnScale' | 'yScale'> {
+  const own = parts.slice(0, -1);
+  const last = parts.at(-1) as ScaledColumn;
   return {
-    columns: parts.map((part) => part.column),
+    columns: own.map((part) => part.column),
     y: last.column,
-    columnScale: Float64Array.from(parts, (part) => part.scale),
+    columnScale: Float64Array.from(own, (part) => part.scale),
     yScale: last.scale,
-    rootScale,
-    roots,
   };
 }
 
-function whitenOne(column: Decimals, inverses: Decimals | null): { column: Decimals; scale: number } {
+function whitenOne(column: Decimals, whiten: ((column: Decimals) => Decimals) | null): ScaledColumn {
   const before = powerOfTwoBelow(checkedLargest(column));
-  const scaled = times(column, 1 / before);
-  if (!inverses) return { column: scaled, scale: before };
-  const whitened = wideTimes(scaled, inverses);
+  const scaled = before === 1 ? column : divided(column, before);
+  if (!whiten) return { column: scaled, scale: before };
+  const whitened = whiten(scaled);
   const after = powerOfTwoBelow(largestOf(whitened.high));
-  return { column: times(whitened, 1 / after), scale: before * after };
+  if (after !== 1) divideInPlace(whitened, after);
+  return { column: whitened, scale: before * after };
 }
 
-function checkedLargest(column: Decimals): number {
-  const largest = largestOf(column.high);
-  if (!(largest < Infinity) || column.high.some(Number.isNaN))
-    throw new RangeError('a column holds a value that is not finite');
+function checkedLargest({ high }: Decimals): number {
+  let largest = 0;
+  for (let g = 0; g < high.length; g++) {
+    const size = Math.abs(high[g] as number);
+    if (!(size < Infinity)) throw new RangeError('a column holds a value that is not finite');
+    if (size > largest) largest = size;
+  }
   return largest;
 }
 
-function times(column: Decimals, factor: number): Decimals {
-  return { high: column.high.map((x) => x * factor), low: column.low.map((x) => x * factor) };
+function divided({ high, low }: Decimals, by: number): Decimals {
+  const column = { high: high.slice(), low: low.slice() };
+  divideInPlace(column, by);
+  return column;
+}
+
+/** by: a power of two. */
+function divideInPlace({ high, low }: Decimals, by: number): void {
+  const factor = 1 / by;
+  for (let g = 0; g < high.length; g++) {
+    high[g] = (high[g] as number) * factor;
+    low[g] = (low[g] as number) * factor;
+  }
 }
 
 /** Roots and inverse roots of v / power; inverses is null where every root is 1. */

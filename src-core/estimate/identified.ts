@@ -2,8 +2,9 @@ import { symmetricEigen, symmetricInverse } from '../algebra/dense';
 import type { Design } from '../model/design';
 import { freeParameters, interiorPoint, type Structure } from '../model/structure';
 import { done, type Outcome, refuse } from '../protocol/outcome';
+import { alikeUnderWeights } from './alike-under-weights';
 import { likelihoodAt } from './likelihood';
-import { likelihoodRows } from './likelihood-rows';
+import { type LikelihoodRows, triedRows } from './likelihood-rows';
 
 /** Below this smallest eigenvalue of the scaled information two parameters say the same; below the second, nearly so. */
 const SAME = 1e-8;
@@ -24,7 +25,7 @@ export interface Identification {
  *
  * The restricted expected information (the full one misses what the design absorbs) at an interior point where the parts weigh alike, scaled to
  * unit diagonal. Parameters that the user fixed do not count; with G = k there is nothing to judge and the fit itself refuses.
- * Refuses a smallest eigenvalue below 1e-8 (`not-identified`: the kinds of the parts that say the same, in the plan's order).
+ * Refuses columns that the middle variances make depend on each other (`dependent-columns`), and a smallest eigenvalue below 1e-8 (`not-identified`: the kinds of the parts that say the same, in the plan's order).
  *
  * Example: per-size + between on cells of equal size.
  */
@@ -34,13 +35,21 @@ export function identificationOf(model: {
   readonly at?: string;
 }): Outcome<Identification> {
   const { design, structure, at = '/variance' } = model;
-  const cells = structure.sampling.length;
+  const cells = structure.count;
   const free = freeParameters(structure);
   if (free.length < 2 || cells <= design.columns.length) return done({ smallest: 1, hardlySeparate: null });
-  const information = informationInside(design, structure);
+  const zeros = new Float64Array(cells);
+  const rows = triedRows({ response: { high: zeros, low: zeros }, design, structure });
+  if ('dependent' in rows) return alikeUnderWeights(design, rows.dependent, at);
+  const information = informationInside(rows, structure, true);
   const scaled = information && unitDiagonal(information);
-  const parts = (places: readonly number[]) => [...new Set(places.map((i) => structure.parameters[i]?.part as string))];
-  if (!scaled) return refuse('not-identified', { parts: parts(free) }, `${at}/parts`);
+  const parts = (places: readonly number[]) => {
+    const own = new Set(places.map((i) => structure.parameters[i]?.partAt));
+    return structure.parts.flatMap(({ part }, p) => (own.has(p) ? [part.kind] : []));
+  };
+  const none = silent(rows, structure, information);
+  if (!scaled || none.length > 0)
+    return refuse('not-identified', { parts: parts(none.length > 0 ? none : free) }, `${at}/parts`);
   const { values, vectors } = symmetricEigen(scaled);
   const smallest = values.at(-1) as number;
   if (smallest < SAME) {
@@ -52,11 +61,29 @@ export function identificationOf(model: {
   return done({ smallest, hardlySeparate: smallest < NEARLY ? mostCorrelated(names, scaled) : null });
 }
 
-function informationInside(design: Design, structure: Structure): readonly Float64Array[] | null {
-  const zeros = new Float64Array(structure.sampling.length);
-  const rows = likelihoodRows({ response: { high: zeros, low: zeros }, design, structure });
+function informationInside(
+  rows: LikelihoodRows,
+  structure: Structure,
+  restricted: boolean,
+): readonly Float64Array[] | null {
   const theta = interiorPoint(structure);
-  return likelihoodAt({ rows, structure, restricted: true, theta })?.information ?? null;
+  return likelihoodAt({ rows, structure, restricted, theta })?.information ?? null;
+}
+
+/** What is left of a parameter's information where the design takes up everything else is rounding. */
+const TAKEN_UP = 1e-12;
+
+/** The free parameters that say nothing: the design takes up all that they could tell. */
+function silent(
+  rows: LikelihoodRows,
+  structure: Structure,
+  restricted: readonly Float64Array[] | null,
+): readonly number[] {
+  const full = informationInside(rows, structure, false);
+  return freeParameters(structure).filter((_, a) => {
+    const whole = full?.[a]?.[a];
+    return whole !== undefined && (restricted?.[a]?.[a] as number) <= TAKEN_UP * whole;
+  });
 }
 
 function unitDiagonal(rows: readonly Float64Array[]): Float64Array[] | null {

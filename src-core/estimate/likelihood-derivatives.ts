@@ -1,4 +1,5 @@
 import { forwardInPlace } from '../algebra/cholesky';
+import { plainDot } from '../numbers/sums';
 import type { LikelihoodRows } from './likelihood-rows';
 
 /** d_i unit_i / v for every row; derivative and variances: one entry a cell. */
@@ -23,6 +24,47 @@ interface Derived {
   };
   readonly slopes: readonly Float64Array[];
   readonly restricted: boolean;
+  readonly turned: Turned;
+}
+
+/** L^-1 q of every row, row after row, and the leverages relative q' (L L')^-1 q; under the full likelihood leverages are 0 and nothing is turned. */
+interface Turned {
+  readonly vectors: Float64Array;
+  readonly leverages: Float64Array;
+}
+
+/** What score and information both need of the rows. */
+export function turnedRows({ rows, weighed, restricted }: Omit<Derived, 'slopes' | 'turned'>): Turned {
+  const { terms: k, basis } = rows;
+  const { relative, factor } = weighed;
+  const leverages = new Float64Array(relative.length);
+  if (!restricted) return { vectors: new Float64Array(0), leverages };
+  const inverse = inverseOfLower(factor, k);
+  const vectors = new Float64Array(relative.length * k);
+  for (let g = 0, at = 0; g < leverages.length; g++, at += k) {
+    let squares = 0;
+    for (let i = 0; i < k; i++) {
+      let z = 0;
+      for (let j = 0; j <= i; j++) z += (inverse[i * k + j] as number) * (basis[at + j] as number);
+      vectors[at + i] = z;
+      squares += z * z;
+    }
+    leverages[g] = (relative[g] as number) * squares;
+  }
+  return { vectors, leverages };
+}
+
+/** L^-1, row after row. */
+function inverseOfLower(factor: Float64Array, k: number): Float64Array {
+  const inverse = new Float64Array(k * k);
+  const column = new Float64Array(k);
+  for (let j = 0; j < k; j++) {
+    column.fill(0);
+    column[j] = 1;
+    forwardInPlace(factor, column, k);
+    for (let i = j; i < k; i++) inverse[i * k + j] = column[i] as number;
+  }
+  return inverse;
 }
 
 /**
@@ -30,54 +72,41 @@ interface Derived {
  *
  * rows, weighed: the least-squares solution at theta; slopes: d_i unit_i / v of each free parameter, a row. Formulas: `likelihoodAt`.
  */
-export function scoreOf(model: Derived): Float64Array {
-  const score = new Float64Array(model.slopes.length);
-  const { relative, residuals } = model.weighed;
-  overRows(model, (g, leverage) => {
+export function scoreOf({ rows, weighed, slopes, turned }: Derived): Float64Array {
+  const { relative, residuals } = weighed;
+  const excess = new Float64Array(relative.length);
+  for (let g = 0; g < excess.length; g++) {
     const square = (relative[g] as number) * (residuals[g] as number) * (residuals[g] as number);
-    const excess = (square - ((model.rows.count[g] as number) - leverage)) / 2;
-    for (let a = 0; a < score.length; a++)
-      score[a] = (score[a] as number) + ((model.slopes[a] as Float64Array)[g] as number) * excess;
-  });
-  return score;
+    excess[g] = (square - ((rows.count[g] as number) - (turned.leverages[g] as number))) / 2;
+  }
+  return Float64Array.from(slopes, (slope) => plainDot(slope, excess));
 }
 
 /** Expected information of one likelihood, as rows; what it takes as in `scoreOf`. */
-export function informationOf(model: Derived): Float64Array[] {
-  const { rows, slopes, restricted } = model;
-  const { relative } = model.weighed;
+export function informationOf({ rows, weighed, slopes, restricted, turned }: Derived): Float64Array[] {
+  const { terms: k, count } = rows;
+  const { relative } = weighed;
   const q = slopes.length;
   const information = slopes.map(() => new Float64Array(q));
-  const spreads = slopes.map(() => new Float64Array(rows.terms * rows.terms));
-  overRows(model, (g, leverage, z) => {
-    const left = ((rows.count[g] as number) - 2 * leverage) / 2;
-    for (let a = 0; a < q; a++) {
-      const d = (slopes[a] as Float64Array)[g] as number;
-      const row = information[a] as Float64Array;
-      for (let b = 0; b <= a; b++) row[b] = (row[b] as number) + d * ((slopes[b] as Float64Array)[g] as number) * left;
-      if (restricted) addOuter(spreads[a] as Float64Array, z, d * (relative[g] as number));
+  const spreads = slopes.map(() => new Float64Array(k * k));
+  for (let a = 0; a < q; a++) {
+    const slope = slopes[a] as Float64Array;
+    const row = information[a] as Float64Array;
+    for (let b = 0; b <= a; b++) {
+      const other = slopes[b] as Float64Array;
+      let sum = 0;
+      for (let g = 0; g < slope.length; g++) {
+        const left = ((count[g] as number) - 2 * (turned.leverages[g] as number)) / 2;
+        sum += (slope[g] as number) * (other[g] as number) * left;
+      }
+      row[b] = sum;
     }
-  });
-  return completed(information, spreads, rows.terms);
-}
-
-/** Visits every row with its leverage (0 under the full likelihood) and L^-1 q, which is overwritten from row to row. */
-function overRows(
-  { rows, weighed, restricted }: Derived,
-  visit: (g: number, leverage: number, z: Float64Array) => void,
-): void {
-  const { terms: k, basis } = rows;
-  const { relative, factor } = weighed;
-  const z = new Float64Array(k);
-  for (let g = 0, at = 0; g < relative.length; g++, at += k) {
-    let leverage = 0;
-    if (restricted) {
-      for (let i = 0; i < k; i++) z[i] = basis[at + i] as number;
-      forwardInPlace(factor, z, k);
-      for (let i = 0; i < k; i++) leverage += (relative[g] as number) * (z[i] as number) * (z[i] as number);
-    }
-    visit(g, leverage, z);
+    if (!restricted) continue;
+    const spread = spreads[a] as Float64Array;
+    for (let g = 0, at = 0; g < slope.length; g++, at += k)
+      addOuter(spread, turned.vectors, at, (slope[g] as number) * (relative[g] as number), k);
   }
+  return completed(information, spreads, k);
 }
 
 /** Adds tr(S_i S_j) / 2 and mirrors the lower triangle. */
@@ -93,12 +122,11 @@ function completed(lower: readonly Float64Array[], spreads: readonly Float64Arra
   return rows;
 }
 
-/** Lower triangle of target += factor z z'. */
-function addOuter(target: Float64Array, z: Float64Array, factor: number): void {
-  const k = z.length;
+/** Lower triangle of target += factor z z', z from a place on. */
+function addOuter(target: Float64Array, vectors: Float64Array, at: number, factor: number, k: number): void {
   for (let i = 0; i < k; i++) {
-    const fz = factor * (z[i] as number);
-    for (let j = 0; j <= i; j++) target[i * k + j] = (target[i * k + j] as number) + fz * (z[j] as number);
+    const fz = factor * (vectors[at + i] as number);
+    for (let j = 0; j <= i; j++) target[i * k + j] = (target[i * k + j] as number) + fz * (vectors[at + j] as number);
   }
 }
 

@@ -1,38 +1,9 @@
-import { largestOf, powerOfTwoBelow } from '../algebra/powers-of-two';
-import { freeParameters, type Structure } from '../model/structure';
+import { freeParameters } from '../model/structure';
 import { log } from '../numbers/elementary';
-import { informationOf, rowSlopes, scoreOf } from './likelihood-derivatives';
-import type { LikelihoodRows } from './likelihood-rows';
+import { informationOf, rowSlopes, scoreOf, turnedRows } from './likelihood-derivatives';
+import { linkedLikelihood, linkedLikelihoodAt } from './likelihood-linked';
+import { type Height, heightOf, type Likelihood, type LikelihoodPlace, unitOf } from './likelihood-place';
 import { type WeighedRows, weighedRows } from './weighed-rows';
-
-export const LOG_TWO_PI = 1.8378770664093456;
-
-/** Where a likelihood is looked at. */
-export interface LikelihoodPlace {
-  readonly rows: LikelihoodRows;
-  readonly structure: Structure;
-  readonly restricted: boolean;
-  readonly theta: Float64Array;
-}
-
-/** A log-likelihood at one point, without its derivatives. */
-export interface Height {
-  readonly logLikelihood: number;
-  /** r' Omega^-1 r over its divisor: by how much all variances would have to grow together. */
-  readonly scaleRatio: number;
-  /** The log-likelihood after they have, exact however far off this point is; Infinity where nothing is left over. */
-  readonly rescaled: number;
-}
-
-/** With its derivatives by the free parameters, each counted in a unit of its own, so that none runs over or under. */
-export interface Likelihood extends Height {
-  /** Of each free parameter: a power of two near the value at which it alone would make the variances what they are; 1 for an exponent. */
-  readonly units: Float64Array;
-  /** dl / d(theta_i / unit_i), one entry a free parameter. */
-  readonly score: Float64Array;
-  /** Expected information of theta_i / unit_i, as rows. */
-  readonly information: readonly Float64Array[];
-}
 
 interface Weighed extends Height, WeighedRows {
   readonly variances: Float64Array;
@@ -52,6 +23,7 @@ interface Weighed extends Height, WeighedRows {
  * pseudo-likelihood. Null where a variance is not above 0 or so far from the middle that nothing can be computed.
  */
 export function likelihoodAt(place: LikelihoodPlace): Likelihood | null {
+  if (place.structure.links) return linkedLikelihoodAt(place);
   const weighed = weigh(place);
   if (!weighed) return null;
   const { logLikelihood, scaleRatio, rescaled } = weighed;
@@ -61,6 +33,10 @@ export function likelihoodAt(place: LikelihoodPlace): Likelihood | null {
 
 /** The score alone, in units of its own: a fraction of the work where there are many coefficients. */
 export function scoreAt(place: LikelihoodPlace): Pick<Likelihood, 'units' | 'score'> | null {
+  if (place.structure.links) {
+    const found = linkedLikelihood(place);
+    return found && { units: found.units(), score: found.score() };
+  }
   const weighed = weigh(place);
   if (!weighed) return null;
   const { units, derived } = derivedOf(place, weighed);
@@ -69,39 +45,30 @@ export function scoreAt(place: LikelihoodPlace): Pick<Likelihood, 'units' | 'sco
 
 function derivedOf({ rows, structure, restricted, theta }: LikelihoodPlace, weighed: Weighed) {
   const { variances } = weighed;
-  const derivatives = structure.derivativesAt(theta);
+  const derivatives = rows.structureOf(structure).derivativesAt(theta);
   const free = freeParameters(structure);
   const units = Float64Array.from(free, (i) =>
-    i === structure.exponentAt ? 1 : unitOf(derivatives[i] as Float64Array, variances),
+    unitOf(structure.parameters[i], derivatives[i] as Float64Array, variances),
   );
   const slopes = free.map((i, a) =>
     rowSlopes(rows, { derivative: derivatives[i] as Float64Array, unit: units[a] as number, variances }),
   );
-  return { units, derived: { rows, weighed, slopes, restricted } };
-}
-
-/** Largest variance over largest derivative: neither is a sum, so that cells of any spread do not overflow. */
-function unitOf(derivative: Float64Array, variances: Float64Array): number {
-  return powerOfTwoBelow(largestOf(variances)) / powerOfTwoBelow(largestOf(derivative));
+  const turned = turnedRows({ rows, weighed, restricted });
+  return { units, derived: { rows, weighed, slopes, restricted, turned } };
 }
 
 /** The same log-likelihood without its derivatives: a quarter of the work. */
 export function heightAt(place: LikelihoodPlace): Height | null {
-  const weighed = weigh(place);
+  const weighed = place.structure.links ? linkedLikelihood(place) : weigh(place);
   if (!weighed) return null;
   const { logLikelihood, scaleRatio, rescaled } = weighed;
   return { logLikelihood, scaleRatio, rescaled };
 }
 
-/** Cells, less coefficients under the restricted likelihood. */
-export function freedomOf({ rows, restricted }: Pick<LikelihoodPlace, 'rows' | 'restricted'>): number {
-  return rows.cells - (restricted ? rows.terms : 0);
-}
-
 function weigh(place: LikelihoodPlace): Weighed | null {
-  const { rows, structure, restricted, theta } = place;
+  const { rows, structure, theta } = place;
   const { terms: k, cellOf, middle, count } = rows;
-  const variances = structure.variancesAt(theta);
+  const variances = rows.structureOf(structure).variancesAt(theta);
   const relative = new Float64Array(cellOf.length);
   let logVariances = 0;
   for (let g = 0; g < relative.length; g++) {
@@ -114,11 +81,6 @@ function weigh(place: LikelihoodPlace): Weighed | null {
   if (!solved) return null;
   let logGram = rows.logDeterminant;
   for (let i = 0; i < k; i++) logGram += 2 * log(solved.factor[i * k + i] as number);
-  const freedom = freedomOf(place);
-  const constant = freedom * LOG_TWO_PI + logVariances + (restricted ? logGram : 0);
-  const scaleRatio = solved.weightedRss / freedom;
-  const logLikelihood = -(constant + solved.weightedRss) / 2;
-  if (!(Math.abs(logLikelihood) < Infinity)) return null;
-  const rescaled = -(constant + freedom * (log(scaleRatio) + 1)) / 2;
-  return { ...solved, logLikelihood, scaleRatio, rescaled, variances, relative };
+  const height = heightOf(place, { logOmega: logVariances, logGram, squares: solved.weightedRss });
+  return height && { ...solved, ...height, variances, relative };
 }

@@ -9,6 +9,8 @@ const SHAKY = 1e-6;
 /** Below this share of its length a weighted column is explained by the others, to rounding. */
 const NOTHING = 1e-14;
 
+type Rows = Pick<LikelihoodRows, 'terms' | 'basis' | 'response'>;
+
 /** Weighted least squares on the rows of a likelihood. */
 export interface WeighedRows {
   /** Lower factor L of Q' W Q = L L', row after row. */
@@ -24,7 +26,7 @@ export interface WeighedRows {
  *
  * weights: one a row, above 0. Null where the weights leave a column that the others explain.
  */
-export function weighedRows(rows: LikelihoodRows, weights: Float64Array): WeighedRows | null {
+export function weighedRows(rows: Rows, weights: Float64Array): WeighedRows | null {
   const { gram, right } = normalEquations(rows, weights);
   const factor = choleskyOf(gram, rows.terms);
   if (!factor || smallestPivot(factor, gram, rows.terms) < SHAKY) return byReflections(rows, weights);
@@ -40,7 +42,7 @@ function smallestPivot(factor: Float64Array, gram: Float64Array, k: number): num
   return smallest;
 }
 
-function byReflections(rows: LikelihoodRows, weights: Float64Array): WeighedRows | null {
+function byReflections(rows: Rows, weights: Float64Array): WeighedRows | null {
   const { terms: k, basis, response } = rows;
   // Heaviest rows first: reflections are then stable row by row.
   const order = [...weights.keys()].sort((a, b) => (weights[b] as number) - (weights[a] as number) || a - b);
@@ -60,7 +62,7 @@ function byReflections(rows: LikelihoodRows, weights: Float64Array): WeighedRows
   return withResiduals({ rows, weights, factor, solution: solveUpper(reflected.triangle, target) });
 }
 
-function normalEquations(rows: LikelihoodRows, weights: Float64Array): { gram: Float64Array; right: Float64Array } {
+function normalEquations(rows: Rows, weights: Float64Array): { gram: Float64Array; right: Float64Array } {
   const { terms: k, basis, response } = rows;
   const gram = new Float64Array(k * k);
   const right = new Float64Array(k);
@@ -78,7 +80,7 @@ function normalEquations(rows: LikelihoodRows, weights: Float64Array): { gram: F
 }
 
 function withResiduals(solved: {
-  readonly rows: LikelihoodRows;
+  readonly rows: Rows;
   readonly weights: Float64Array;
   readonly factor: Float64Array;
   readonly solution: Float64Array;

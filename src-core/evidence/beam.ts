@@ -2,6 +2,7 @@ import type { Fitted } from '../estimate/fitted';
 import { sortedIndices } from '../numbers/order';
 import { dot, sum } from '../numbers/sums';
 import type { Beam, Interval } from '../protocol/result';
+import { concentrationOf } from './cell-results';
 import { heldFit } from './held';
 import type { Judge } from './judge';
 import { placesWithout } from './subset';
@@ -9,7 +10,7 @@ import { placesWithout } from './subset';
 /**
  * Each cell's pull on each coefficient, what it contributes, and the coefficient without the heaviest cells.
  *
- *     b_j = sum_g C_jg y_g,  contribution_g = C_jg (y_g - c),  c = sum w y / sum w
+ *     b_j = sum_g C_jg y_g,  contribution_g = C_jg (y_g - c),  c = sum w y / sum w,  w = A^-1 1
  *
  * Pulls in units of coefficient over outcome; contributions in the coefficient's unit, from the fitted mean, since a pull on a raw observation
  * depends on where zero is. They are null for the intercept and without one. heaviest: the fewest cells that carry half of sum abs(pull), deleted
@@ -43,10 +44,7 @@ export function beamOf(of: {
 
 /** The mean that the estimator's weights give the observations. */
 function weightedMean({ weighting, response }: Fitted): number {
-  let least = Infinity;
-  for (const a of weighting) least = Math.min(least, a);
-  const weights = weighting.map((a) => least / a);
-  return dot(weights, response.high) / sum(weights);
+  return dot(concentrationOf(weighting).shares, response.high);
 }
 
 /** Places of the fewest cells that carry half of the total absolute pull, heaviest first. */

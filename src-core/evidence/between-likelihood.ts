@@ -1,3 +1,5 @@
+import type { Covariance } from '../algebra/covariance';
+import { factorOf } from '../algebra/factored';
 import { reflectAll } from '../algebra/householder';
 import { projectOut, spanOf } from '../algebra/orthonormal';
 import { log } from '../numbers/elementary';
@@ -6,40 +8,37 @@ import { plainSquares } from '../numbers/sums';
 /** A likelihood in which only a free scale is left to maximise over: it profiles out. */
 export interface Rule {
   readonly restricted: boolean;
-  /** True where phi is estimated and multiplies the shape. */
+  /** True where a factor over all of Omega is estimated with the rest. */
   readonly freeScale: boolean;
 }
 
-/** The likelihood of responses at one shape of the variances, up to a constant that no shape changes. */
+/** The likelihood of responses at one Omega, up to a constant that no Omega changes. */
 export interface AtShape {
   /** Twice the log-likelihood of a response of length G. */
   readonly twiceLogLikelihood: (response: Float64Array) => number;
 }
 
 /**
- * Likelihoods of one model at several shapes.
+ * Likelihoods of one model at several Omegas.
  *
- *     full        - G ln(r'r) - sum ln a               phi free;   - r'r - sum ln a              phi known, inside a
- *     restricted  - (G-k) ln(r'r) - sum ln a - ln |X'A^-1 X|;      the same with - r'r
+ *     full        - G ln(r'Omega^-1 r) - ln det Omega                a factor free;   - r'Omega^-1 r - ln det Omega   known
+ *     restricted  - (G-k) ln(r'Omega^-1 r) - ln det Omega - ln |X'Omega^-1 X|;        the same with - r'Omega^-1 r
  *
- * basis: of the model's columns, orthonormal, length G each: its own determinant is constant; a: the shape, above 0.
+ * basis: of the model's columns, orthonormal, length G each: its own determinant is constant; Omega: positive definite.
  */
-export function likelihoodsOf(basis: readonly Float64Array[], rule: Rule): (shape: Float64Array) => AtShape {
-  return (shape) => {
-    const roots = shape.map((a) => Math.sqrt(a));
-    const whiten = (column: Float64Array) => column.map((x, g) => x / (roots[g] as number));
-    const moved = basis.map(whiten);
+export function likelihoodsOf(basis: readonly Float64Array[], rule: Rule): (omega: Covariance) => AtShape {
+  return (omega) => {
+    const { whitened, logDeterminant } = factorOf(omega);
+    const moved = basis.map(whitened);
     const orthonormal = spanOf(moved);
-    const freedom = shape.length - (rule.restricted ? basis.length : 0);
-    let offset = shape.reduce((sum, a) => sum + log(a), 0);
+    const freedom = omega.diagonal.length - (rule.restricted ? basis.length : 0);
+    let offset = logDeterminant;
     if (rule.restricted)
       for (const [j, column] of reflectAll(moved).triangle.entries()) offset += 2 * log(Math.abs(column[j] as number));
-    const work = new Float64Array(shape.length);
-    const residuals = new Float64Array(shape.length);
+    const residuals = new Float64Array(omega.diagonal.length);
     return {
       twiceLogLikelihood: (response) => {
-        for (let g = 0; g < work.length; g++) work[g] = (response[g] as number) / (roots[g] as number);
-        const left = plainSquares(projectOut(orthonormal, work, residuals));
+        const left = plainSquares(projectOut(orthonormal, whitened(response), residuals));
         return -offset - (rule.freeScale ? freedom * log(left / freedom) + freedom : left);
       },
     };

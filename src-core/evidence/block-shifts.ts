@@ -1,24 +1,44 @@
+import { choleskyOf, solveByFactor } from '../algebra/cholesky';
 import { solve } from '../algebra/dense';
+import { factorOf } from '../algebra/factored';
 import type { Fitted } from '../estimate/fitted';
 import { dot, lengthOf } from '../numbers/sums';
 
 /**
  * How far every coefficient falls when a block of cells is left out, the weights of the others held.
  *
- *     d = b - b(-b) = (X'WX - X_b' W_b X_b)^-1 X_b' W_b r_b
+ *     d = b - b(-b) = C_.b Q_bb^-1 (A^-1 r)_b,  Q = A^-1 - A^-1 X (X'A^-1X)^-1 X'A^-1
+ *       = (X~'X~ - X~_b' X~_b)^-1 X~_b' r~_b  where no cell of the block is correlated with one that stays
  *
- * Whitened columns are scaled to unit length; k numbers in the coefficients' units. Good to rank blocks by: what is told of one is refitted.
- * Null where the other cells cannot carry the terms.
+ * A: the estimator's weighting; a tilde marks whitened quantities, their columns scaled to unit length. k numbers in the coefficients' units. Good to
+ * rank blocks by: what is told of one is refitted. Null where the other cells cannot carry the terms.
  *
- * Source: Cook & Weisberg 1982.
+ * Source: Cook & Weisberg 1982; METHODS of the program, 5.
  */
 export function blockShiftsOf(fitted: Fitted): (gone: readonly number[]) => number[] | null {
-  const roots = fitted.weighting.map(Math.sqrt);
-  const whitened = fitted.design.columns.map(({ high }) => high.map((x, g) => x / (roots[g] as number)));
+  const whole = wholeBlocks(fitted);
+  const parts = fitted.weighting.blocks ? partialBlocks(fitted) : null;
+  const stands = standsAlone(fitted);
+  return (gone) => (parts && !stands(gone) ? parts(gone) : whole(gone));
+}
+
+/** True where every correlated block that the cells touch lies among them as a whole. */
+function standsAlone({ weighting }: Fitted): (gone: readonly number[]) => boolean {
+  const blockOf = new Map<number, Int32Array>();
+  for (const { cells } of weighting.blocks ?? []) for (const g of cells) blockOf.set(g, cells);
+  return (gone) => {
+    const among = new Set(gone);
+    return gone.every((g) => blockOf.get(g)?.every((other) => among.has(other)) ?? true);
+  };
+}
+
+function wholeBlocks({ weighting, design, residuals: left }: Fitted): (gone: readonly number[]) => number[] | null {
+  const { whitened: whiten } = factorOf(weighting);
+  const whitened = design.columns.map(({ high }) => whiten(high));
   const units = whitened.map(lengthOf);
   const columns = whitened.map((column, j) => column.map((x) => x / (units[j] as number)));
-  const gram = columns.map((left) => Float64Array.from(columns, (right) => dot(left, right)));
-  const residuals = fitted.residuals.map((r, g) => r / (roots[g] as number));
+  const gram = columns.map((one) => Float64Array.from(columns, (other) => dot(one, other)));
+  const residuals = whiten(left);
   return (gone) => {
     const shifts = blockShifts({ columns, gram, residuals }, gone);
     return shifts && Array.from(shifts, (value, j) => value / (units[j] as number));
@@ -44,4 +64,25 @@ function blockShifts(
     }
   }
   return solve(left, right);
+}
+
+/** By the square Q_bb of the cells that go: they are correlated with cells that stay. */
+function partialBlocks({ weighting, basis, residuals, pulls }: Fitted): (gone: readonly number[]) => number[] | null {
+  const factor = factorOf(weighting);
+  const taken = basis.map(factor.backwards);
+  const turned = factor.solve(residuals);
+  return (gone) => {
+    const n = gone.length;
+    const among = factor.inverseAmong(gone);
+    for (const q of taken)
+      for (const [a, g] of gone.entries())
+        for (let b = 0; b <= a; b++)
+          among[a * n + b] = (among[a * n + b] as number) - (q[g] as number) * (q[gone[b] as number] as number);
+    const left = choleskyOf(among, n);
+    const right = Float64Array.from(gone, (g) => turned[g] as number);
+    const delta = left && solveByFactor(left, right, n);
+    return (
+      delta && pulls.map((pull) => gone.reduce((sum, g, a) => sum + (pull[g] as number) * (delta[a] as number), 0))
+    );
+  };
 }

@@ -1,3 +1,4 @@
+import { independent } from '../algebra/covariance';
 import { leastSquares } from '../algebra/least-squares';
 import { pullsOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
@@ -14,7 +15,8 @@ const SAME_WEIGHTING = 1e-20;
  *     tau^2 / sigma^2 = sum D^2 / m / sum D^2,  share = tau^2 / (tau^2 + sigma^2)
  *
  * Each weighting is best at its own end of Omega, so that what it loses at the other is the sum of D^2 there: both sums are positive, nothing cancels.
- * m: effective sizes; none where the role is not there. Null where the two weightings coincide (sizes all equal, or the pulls do not depend on them).
+ * m: effective sizes; none where the role is not there. Null where the two weightings coincide (sizes all equal, or the pulls do not depend on them), and
+ * where weights by size leave nothing to tell the columns apart by.
  *
  * Example: the mean of cells of 5, 10, 20, 50, 100 and 400: ratio .026305771096, share .02563.
  * Source: PRACTICE of the program, 15, recomputed for every coefficient.
@@ -23,13 +25,14 @@ export function breakEvenOf(of: { readonly fitted: Fitted; readonly cells: Cells
   const { design, response } = of.fitted;
   const sizes = of.cells.effectiveSize;
   if (!sizes) return [];
-  const under = (variances: Float64Array): Float64Array[] => {
+  const under = (variances: Float64Array): Float64Array[] | null => {
     const solved = leastSquares({ columns: design.columns, y: response, variances });
-    if ('dependent' in solved) throw new RangeError('columns depend on each other under the weights alone');
-    return pullsOf(solved, variances);
+    return 'dependent' in solved ? null : pullsOf(solved, independent(variances));
   };
   const equal = under(new Float64Array(sizes.length).fill(1));
-  return breakEvenBetween({ terms: design.names, equal, sized: under(sizes.map((m) => 1 / m)), sizes });
+  const sized = under(sizes.map((m) => 1 / m));
+  if (!equal || !sized) return design.names.map((term) => ({ term, intraclass: null }));
+  return breakEvenBetween({ terms: design.names, equal, sized, sizes });
 }
 
 /** Equal and sized: C under either weighting, k rows of length G, in units of coefficient over outcome; sizes: m, length G, above 0. */

@@ -1,5 +1,6 @@
 import type { Fitted } from '../estimate/fitted';
 import type { Decimals } from '../numbers/decimals';
+import type { Plan } from '../protocol/plan';
 import type { CarriedBy } from '../protocol/result';
 import type { Cells } from '../table/cells';
 
@@ -8,13 +9,17 @@ import type { Cells } from '../table/cells';
  *
  * A column that one value fills in half of the cells or more (a category's 0, as a rule) varies by the others alone: those are its cells, and its
  * groups are the fewer of those that hold such a cell and those that hold the common value. Any other column rests on every cell and group,
- * and so does the intercept. Label columns that tell every cell apart, or none, make no groups and are left out.
+ * and so does the intercept. plan: its clusters are groups as well, several columns together joined by " × ". Label columns that tell every cell apart, or none, make no groups and are left out.
  *
  * Example: a law in force in 3 of 14 districts, over 6 years: 18 cells; by district 3 groups, constant within; by year 6 groups.
  */
-export function carriedByOf(of: { readonly fitted: Fitted; readonly cells: Cells }): CarriedBy[] {
+export function carriedByOf(of: {
+  readonly fitted: Fitted;
+  readonly cells: Cells;
+  readonly plan?: Pick<Plan, 'inference'>;
+}): CarriedBy[] {
   const { design } = of.fitted;
-  const labels = groupingColumns(of.cells);
+  const labels = of.plan ? groupingsOf(of.cells, of.plan) : groupingColumns(of.cells);
   return design.names.map((term, j) => {
     const column = design.columns[j] as Decimals;
     const common = design.termOf[j] === -1 ? null : commonValue(column);
@@ -44,6 +49,22 @@ export function groupingColumns(cells: Cells): Grouping[] {
   return cells.labelColumns
     .map((name) => ({ name, ...groupsOf(cells.texts(name)) }))
     .filter(({ count }) => count > 1 && count < cells.count);
+}
+
+/** The label columns that pair cells, and the clusters of the plan's inference where they are none of these. */
+export function groupingsOf(cells: Cells, { inference }: Pick<Plan, 'inference'>): Grouping[] {
+  const labels = groupingColumns(cells);
+  const ways = inference.kind === 'clustered' || inference.kind === 'wild' ? [inference.by] : [];
+  if (inference.kind === 'clustered' && inference.alsoBy) ways.push(inference.alsoBy);
+  const clusters = ways
+    .filter((by) => !(by.length === 1 && labels.some(({ name }) => name === by[0])))
+    .map((by) => {
+      const columns = by.map((column) => cells.texts(column));
+      const keys = Array.from({ length: cells.count }, (_, g) => JSON.stringify(columns.map((texts) => texts[g])));
+      return { name: by.join(' × '), ...groupsOf(keys) };
+    })
+    .filter(({ count }) => count > 1 && count < cells.count);
+  return [...labels, ...clusters];
 }
 
 function groupsOf(texts: readonly string[]): Omit<Grouping, 'name'> {

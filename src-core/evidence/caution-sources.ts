@@ -3,6 +3,7 @@ import type { CautionCode, CautionFacts, Shift } from '../protocol/cautions';
 import type { Plan } from '../protocol/plan';
 import type { Result } from '../protocol/result';
 import type { Cells } from '../table/cells';
+import type { LimitFacts } from './limits';
 
 /** The parts of the result that cautions are drawn from. */
 export type CautionPieces = Pick<
@@ -18,7 +19,8 @@ export type CautionPieces = Pick<
   | 'beam'
   | 'overturn'
   | 'selfChecks'
->;
+> &
+  Partial<Pick<Result, 'bounds'>>;
 
 export interface CautionSources {
   readonly plan: Plan;
@@ -26,6 +28,8 @@ export interface CautionSources {
   readonly fitted: Fitted;
   readonly pieces: CautionPieces;
   /** Two variance parameters that the cells hardly tell apart, where the model stage found such a pair. */
+  /** What values known to within limits did, where any are. */
+  readonly limits?: LimitFacts;
   readonly hardlySeparate?: CautionFacts['parameters-hardly-separate'] | null;
 }
 

@@ -39,7 +39,7 @@ export function cautionsOfFit({ fitted, pieces }: CautionSources): Found[] {
     ratio !== null && (ratio < ROBUST_BAND[0] || ratio > ROBUST_BAND[1]) ? [{ term, ratio }] : [],
   );
   if (apart.length > 0) found.push({ code: 'robust-differs', facts: { terms: apart } });
-  return [...found, ...cautionsOfChanges(pieces), ...cautionsOfTests(pieces)];
+  return [...found, ...cautionsOfChanges(pieces), ...cautionsOfTests(pieces, fitted.correlated)];
 }
 
 function cautionsOfChanges({ overturn, fit }: CautionSources['pieces']): Found[] {
@@ -62,7 +62,7 @@ function cautionsOfChanges({ overturn, fit }: CautionSources['pieces']): Found[]
   return [{ code: 'overturned', facts }];
 }
 
-function cautionsOfTests({ evidence, fit, beside, cells }: CautionSources['pieces']): Found[] {
+function cautionsOfTests({ evidence, fit, beside, cells }: CautionSources['pieces'], correlated: boolean): Found[] {
   const found: Found[] = [];
   const shift = largestShift(
     fit,
@@ -75,9 +75,10 @@ function cautionsOfTests({ evidence, fit, beside, cells }: CautionSources['piece
   if (rejecting.length > 0) found.push({ code: 'structure-rejected', facts: { tests: rejecting.map(testOf), shift } });
 
   const dependence = evidence.filter(({ test, reading }) => test === 'dependence' && reading !== 'not-applicable');
-  const together = dependence.filter(({ reading }) => reading === 'rejects');
+  const together = dependence.filter((one) => one.reading === 'rejects' && !isClustered(one, fit.inference));
   if (together.length > 0) found.push({ code: 'dependence-found', facts: { tests: together.map(testOf) } });
-  if (dependence.length === 0) found.push({ code: 'dependence-not-tested', facts: { cells: cells.length } });
+  if (dependence.length === 0 && !correlated)
+    found.push({ code: 'dependence-not-tested', facts: { cells: cells.length } });
 
   for (const { test, statistic, freedom1, freedom2, p } of evidence) {
     if (p === null || p >= SIGNIFICANT) continue;
@@ -89,6 +90,15 @@ function cautionsOfTests({ evidence, fit, beside, cells }: CautionSources['piece
     if (test === 'shapiro-wilk') found.push({ code: 'residuals-not-normal', facts: { statistic, p } });
   }
   return found;
+}
+
+/** Whether the errors of the coefficients allow for what a dependence test pairs by already. */
+function isClustered({ detail }: Evidence, inference: CautionSources['pieces']['fit']['inference']): boolean {
+  if (inference.kind !== 'clustered' && inference.kind !== 'wild') return false;
+  const ways = [inference.by, ...(inference.kind === 'clustered' && inference.alsoBy ? [inference.alsoBy] : [])];
+  const by = detail['by'];
+  // Cells that share all columns of a cluster's key are in one cluster.
+  return Array.isArray(by) && by.length > 0 && ways.some((way) => way.every((column) => by.includes(column)));
 }
 
 /** A fixed scale that the chi-square does not bear out. */

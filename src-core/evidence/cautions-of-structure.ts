@@ -1,8 +1,12 @@
+import { isLinked, isOfCounts } from '../protocol/linked';
 import type { VarianceParameter } from '../protocol/result';
 import { type CautionSources, type Found, largestShift } from './caution-sources';
 
 /** Given errors on fewer degrees of freedom are noisy weights. */
 const NOISY_BELOW = 30;
+
+/** A given matrix on fewer degrees of freedom than so many times its cells is a noisy inverse. */
+const TIMES_CELLS = 10;
 
 /** What the variance structure, its parameters and the weights give cause to say. */
 export function cautionsOfStructure(sources: CautionSources): Found[] {
@@ -19,7 +23,7 @@ export function cautionsOfStructure(sources: CautionSources): Found[] {
   const empty = betweenRules.filter(({ qLow, qHigh }) => qLow === null && qHigh === null);
   if (empty.length > 0) found.push({ code: 'between-interval-empty', facts: { rules: empty.map(({ rule }) => rule) } });
   if (hardlySeparate) found.push({ code: 'parameters-hardly-separate', facts: hardlySeparate });
-  return [...found, ...givenErrors(sources), ...structuresTried(pieces)];
+  return [...found, ...givenErrors(sources), ...countedErrors(sources), ...structuresTried(pieces)];
 }
 
 /** Effective cells below half of the cells. */
@@ -57,21 +61,41 @@ function atBoundary({ name }: VarianceParameter, { betweenRules, fit }: CautionS
   };
 }
 
+/** Counts on a transformed scale: weights from the observed outcome, and halves where a logit would not exist without. */
+function countedErrors({ plan, cells }: CautionSources): Found[] {
+  const found: Found[] = [];
+  const transformed = plan.outcomeScale !== 'identity' && !isLinked(plan);
+  if (transformed && isOfCounts(plan))
+    found.push({ code: 'errors-from-outcome', facts: { cause: 'minimum-chi-square' } });
+  const labels = cells.labels.filter((_, g) => (cells.addedHalves?.[g] ?? 0) > 0);
+  const to = plan.addedHalf;
+  if (labels.length > 0 && (to === 'extreme-cells' || to === 'all-cells'))
+    found.push({ code: 'halves-added', facts: { to, cells: labels.length, labels } });
+  return found;
+}
+
 function givenErrors({ plan, pieces }: CautionSources): Found[] {
   const given = plan.variance.parts.find(({ kind }) => kind === 'given' || kind === 'matrix');
   if (!given) return [];
   const found: Found[] = [];
   const { errorFreedom } = pieces.fit;
-  if (errorFreedom)
+  if (errorFreedom && given.kind === 'matrix')
+    found.push({ code: 'matrix-estimated', facts: matrixFacts(errorFreedom.low, pieces.cells.length) });
+  else if (errorFreedom)
     found.push({ code: 'errors-estimated', facts: { ...errorFreedom, noisy: errorFreedom.median < NOISY_BELOW } });
   else found.push({ code: 'errors-taken-as-exact', facts: { cells: pieces.cells.length } });
 
   const { errorKind, outcomeUnit, count } = plan.roles;
-  if (plan.outcomeScale === 'log') found.push({ code: 'errors-from-outcome', facts: { cause: 'log' } });
+  if (plan.outcomeScale !== 'identity')
+    found.push({ code: 'errors-from-outcome', facts: { cause: plan.outcomeScale } });
   else if (errorKind === 'cv') found.push({ code: 'errors-from-outcome', facts: { cause: 'cv' } });
   else if (count !== null) found.push({ code: 'errors-from-outcome', facts: { cause: 'count' } });
   else if (outcomeUnit !== 'number') found.push({ code: 'errors-from-outcome', facts: { cause: 'share' } });
   return found;
+}
+
+function matrixFacts(freedom: number, cells: number) {
+  return { freedom, cells, inverted: freedom > cells, noisy: freedom < TIMES_CELLS * cells };
 }
 
 /** Intervals ignore that a structure was chosen among several. */

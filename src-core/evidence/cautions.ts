@@ -3,6 +3,7 @@ import type { Caution, CautionGroup, Detail } from '../protocol/result';
 import type { CautionSources, Found } from './caution-sources';
 import { cautionsOfData } from './cautions-of-data';
 import { cautionsOfFit } from './cautions-of-fit';
+import { cautionsOfInference } from './cautions-of-inference';
 import { cautionsOfStructure } from './cautions-of-structure';
 import { cautionsOfTerms } from './cautions-of-terms';
 
@@ -19,6 +20,7 @@ const groupOrder: readonly CautionGroup[] = ['changes-answer', 'limits-claim', '
 export function cautionsOf(sources: CautionSources): Caution[] {
   const found: Found[] = [
     ...cautionsOfFit(sources),
+    ...cautionsOfInference(sources),
     ...cautionsOfStructure(sources),
     ...cautionsOfTerms(sources),
     ...cautionsOfData(sources),

@@ -15,7 +15,7 @@ export function deletionChecks({ fitted }: { readonly fitted: Fitted }): SelfChe
   const units = Array.from(fitted.errors);
   if (!units.every((unit) => unit > 0)) return [];
   const extreme = extremeOf(fitted, shifts, units);
-  const { shares } = concentrationOf(fitted.targetIsStructure ? fitted.shape : fitted.weighting);
+  const { shares } = concentrationOf(fitted.weighting);
   const heaviest = shares.reduce((most, share, g) => (share > (shares[most] as number) ? g : most), 0);
   const found: SelfCheck[] = [];
   if (extreme) {

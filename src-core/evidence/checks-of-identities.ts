@@ -1,3 +1,4 @@
+import { factorOf } from '../algebra/factored';
 import type { Fitted } from '../estimate/fitted';
 import { dot, lengthOf, sum } from '../numbers/sums';
 import type { SelfCheck } from '../protocol/result';
@@ -11,15 +12,17 @@ export function identityChecks(fitted: Fitted): SelfCheck[] {
   const pulled = worstPull(fitted);
   return [
     { check: 'residuals-orthogonal', passed: angle <= rounding, figure: angle },
-    { check: 'leverages-sum', passed: trace <= rounding * coefficients.length, figure: trace },
+    // Under correlation leverages have no such sum.
+    ...(fitted.weighting.blocks
+      ? []
+      : [{ check: 'leverages-sum' as const, passed: trace <= rounding * coefficients.length, figure: trace }]),
     { check: 'pulls-sum', passed: pulled <= rounding, figure: pulled },
   ];
 }
 
 /** The largest cosine between the whitened residuals and a whitened column; 0 where no residuals are left. */
-function largestAngle({ design, residuals, weighting, targetIsStructure, shape }: Fitted): number {
-  const roots = (targetIsStructure ? shape : weighting).map((a) => Math.sqrt(a));
-  const whiten = (column: Float64Array): Float64Array => column.map((x, g) => x / (roots[g] as number));
+function largestAngle({ design, residuals, weighting }: Fitted): number {
+  const whiten = factorOf(weighting).whitened;
   const left = whiten(residuals);
   const length = lengthOf(left);
   if (length === 0) return 0;

@@ -1,5 +1,8 @@
+import { type Covariance, takeCovariance } from '../algebra/covariance';
 import { fitStructure } from '../estimate/fit';
 import type { Fitted } from '../estimate/fitted';
+import type { Near } from '../estimate/near';
+import type { Structure } from '../model/structure';
 import { structureOf } from '../model/structure-of';
 import { type Decimals, scaledBy, takeRows } from '../numbers/decimals';
 import type { SelfCheckCode } from '../protocol/cautions';
@@ -7,7 +10,7 @@ import type { Part, Plan } from '../protocol/plan';
 import type { SelfCheck } from '../protocol/result';
 import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
-import { take, takeCells, takeDesign } from './subset';
+import { takeCells, takeDesign } from './subset';
 
 const TIMES = 10;
 const COLUMN_TIMES = 1000;
@@ -29,9 +32,11 @@ interface Changed {
   readonly cells: Cells;
   readonly response: Decimals;
   readonly design: Fitted['design'];
-  readonly weighting: Float64Array | null;
+  readonly weighting: Covariance | null;
   readonly timesEstimate: (j: number) => number;
   readonly timesError: (j: number) => number;
+  /** What all variances are expected to be multiplied by. */
+  readonly timesVariance: number;
 }
 
 /** Changes that must leave the coefficients and their errors as they were, or multiply them by a known factor. */
@@ -55,24 +60,32 @@ export function invarianceChecks(sources: Sources): SelfCheck[] {
   });
 }
 
-function judged({ fitted, plan, hooks }: Sources, changed: Changed): SelfCheck {
-  const { check, cells, response, design, weighting } = changed;
-  const structure = structureOf({ variance: plan.variance, cells });
-  const again = structure.ok
-    ? fitStructure({
-        response,
-        design,
-        structure: structure.value,
-        estimate: plan.estimate,
-        weighting,
-        ...(hooks && { hooks }),
-      })
-    : structure;
-  if (!again.ok) return { check, passed: false, figure: null };
-  const figure = departure(fitted, again.value, changed);
+function judged(sources: Sources, changed: Changed): SelfCheck {
+  const { fitted, cells, plan } = sources;
+  const { check } = changed;
+  const structure = structureOf({ variance: plan.variance, cells: changed.cells });
   const searched = fitted.estimatedParameters > 0 && fitted.scale === null;
   const limit = Math.max(searched || fitted.estimatedParameters > 1 ? SEARCHED : 1e-9, fitted.condition * 1e-13);
-  return { check, passed: figure <= limit, figure };
+  if (!structure.ok) return { check, passed: false, figure: null };
+  // From where the fit ended; what is not found again from there is searched for from every start.
+  const near = { structure: fitted.structure, theta: fitted.theta, times: changed.timesVariance };
+  const atOnce =
+    cells.count === changed.cells.count ? refitted(sources, changed, { structure: structure.value, near }) : null;
+  const figure =
+    atOnce !== null && atOnce <= limit ? atOnce : refitted(sources, changed, { structure: structure.value });
+  return { check, passed: figure !== null && figure <= limit, figure };
+}
+
+/** By how much a refit departs from the law; null where it cannot be had. */
+function refitted(
+  { fitted, plan, hooks }: Sources,
+  changed: Changed,
+  of: { readonly structure: Structure; readonly near?: Near },
+): number | null {
+  const { response, design, weighting } = changed;
+  const { estimate } = plan;
+  const again = fitStructure({ response, design, estimate, weighting, ...of, ...(hooks && { hooks }) });
+  return again.ok ? departure(fitted, again.value, changed) : null;
 }
 
 /** The worst relative departure of estimates and errors from what the law says. */
@@ -92,9 +105,15 @@ const once = (): number => 1;
 const tenfold = (): number => TIMES;
 
 function unchanged({ fitted, cells }: Sources, check: SelfCheckCode): Changed {
-  const { response, design } = fitted;
+  const { design } = fitted;
+  const response = responseOf(fitted);
   const weighting = fitted.targetIsStructure ? null : fitted.weighting;
-  return { check, cells, response, design, weighting, timesEstimate: once, timesError: once };
+  return { check, cells, response, design, weighting, timesEstimate: once, timesError: once, timesVariance: 1 };
+}
+
+/** What the fit was made from: under a link not the working response. */
+function responseOf({ response, fixedPoint }: Fitted): Decimals {
+  return fixedPoint?.link?.observed ?? response;
 }
 
 function rowsReversed(sources: Sources): Changed {
@@ -110,11 +129,14 @@ function takenAt(
 ): Pick<Changed, 'cells' | 'response' | 'design' | 'weighting'> {
   return {
     cells: takeCells(cells, rows),
-    response: takeRows(fitted.response, rows),
+    response: takeRows(responseOf(fitted), rows),
     design: takeDesign(fitted.design, rows),
-    weighting: fitted.targetIsStructure ? null : take(fitted.weighting, rows),
+    weighting: fitted.targetIsStructure ? null : takeCovariance(fitted.weighting, rows),
   };
 }
+
+/** Parts whose variances have the outcome's unit and cannot be given another. */
+const boundToUnit: ReadonlySet<Part['kind']> = new Set(['matrix', 'binomial', 'counts']);
 
 /** All sizes times ten: a free scale takes it up. */
 function sizesScaled(sources: Sources): Changed[] {
@@ -131,16 +153,18 @@ function errorsScaled(sources: Sources): Changed[] {
   const given = givenOf(sources.plan);
   if (!given || !nothingFixed(sources.plan)) return [];
   const alone = sources.plan.variance.parts.length === 1;
-  if (given.scale === 'fixed' && !alone) return [];
+  // A correlation that is estimated beside a scale that is set answers to the size of the errors.
+  const unknown = sources.fitted.estimatedParameters > 0;
+  if (given.scale === 'fixed' && (!alone || unknown)) return [];
   const cells = errorsTimes(sources.cells, TIMES);
   const timesError = given.scale === 'fixed' ? tenfold : once;
   return [{ ...unchanged(sources, 'errors-scaled'), cells, timesError }];
 }
 
-/** The outcome, and with it the given errors, in tenths of its unit. */
+/** The outcome, and with it the given errors, in tenths of its unit: counts have none. */
 function outcomeUnit(sources: Sources): Changed[] {
   const { fitted, cells, plan } = sources;
-  if (!nothingFixed(plan)) return [];
+  if (!nothingFixed(plan) || plan.variance.parts.some(({ kind }) => boundToUnit.has(kind))) return [];
   return [
     {
       ...unchanged(sources, 'outcome-unit-changed'),
@@ -148,6 +172,7 @@ function outcomeUnit(sources: Sources): Changed[] {
       response: scaledBy(fitted.response, TIMES),
       timesEstimate: tenfold,
       timesError: tenfold,
+      timesVariance: TIMES * TIMES,
     },
   ];
 }
@@ -172,12 +197,30 @@ function columnUnit(sources: Sources): Changed[] {
 /** The first cell as two of half the information each: nothing changes where variances are known and only sampling makes them. */
 function cellSplit(sources: Sources): Changed[] {
   const { fitted, cells, plan } = sources;
-  const given = givenOf(plan);
-  const alone = plan.variance.parts.length === 1;
-  if (given?.scale !== 'fixed' || !alone || !fitted.targetIsStructure) return [];
+  const [only, ...more] = plan.variance.parts;
+  const halves = cells.addedHalves?.some((half) => half > 0) ?? false;
+  const sampling =
+    only !== undefined && (only.kind === 'given' || isCounted(only.kind)) && 'scale' in only && !fitted.correlated;
+  // Means of unweighted least squares know nothing of sizes.
+  const held = plan.estimate.method === 'two-step' && fitted.fixedPoint;
+  if (!sampling || only.scale !== 'fixed' || more.length > 0 || halves || held || !fitted.targetIsStructure) return [];
   const taken = takenAt(fitted, cells, [...Array.from({ length: cells.count }, (_, g) => g), 0]);
-  const half = taken.cells.error?.map((s, g) => (g === 0 || g === cells.count ? s * Math.SQRT2 : s)) ?? null;
-  return [{ ...unchanged(sources, 'cell-split'), ...taken, cells: { ...taken.cells, error: half } }];
+  const times = (values: Float64Array | null, factor: number) =>
+    values?.map((value, g) => (g === 0 || g === cells.count ? value * factor : value)) ?? null;
+  const { error, size, effectiveSize, counts, exposure } = taken.cells;
+  const split = {
+    ...taken.cells,
+    error: times(error, Math.SQRT2),
+    size: times(size, 0.5),
+    effectiveSize: times(effectiveSize, 0.5),
+    counts: times(counts, 0.5),
+    exposure: times(exposure, 0.5),
+  };
+  return [{ ...unchanged(sources, 'cell-split'), ...taken, cells: split }];
+}
+
+function isCounted(kind: Part['kind']): boolean {
+  return kind === 'binomial' || kind === 'counts';
 }
 
 function givenOf(plan: Plan): (Part & { kind: 'given' }) | null {

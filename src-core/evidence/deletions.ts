@@ -49,7 +49,7 @@ export function deletions(of: {
   const { fitted, cells, plan, coefficients, asked, hooks } = of;
   if (fitted.residualFreedom <= 0) return [];
   const judge = judgeOf(cells, plan);
-  const candidates = [cellCandidates(fitted, cells), blockCandidates(fitted, cells)];
+  const candidates = [cellCandidates(fitted, cells), blockCandidates(fitted, cells, hooks)];
   const k = coefficients.length;
   const limit = Math.max(FEWEST, Math.min(REFITS, Math.floor(WORK / (cells.count * k * k))));
   const largest = coefficients.flatMap((_, j) =>
@@ -100,13 +100,13 @@ function cellCandidates(fitted: Fitted, cells: Cells): Candidate[] {
   }));
 }
 
-function blockCandidates(fitted: Fitted, cells: Cells): Candidate[] {
+function blockCandidates(fitted: Fitted, cells: Cells, hooks?: Hooks): Candidate[] {
   const shiftsOf = blockShiftsOf(fitted);
   return groupingColumns(cells).flatMap((grouping) => {
     const members = Array.from({ length: grouping.count }, (): number[] => []);
     for (const [g, group] of grouping.groups.entries()) members[group]?.push(g);
     return members.flatMap((gone, group): Candidate[] => {
-      if (gone.length < 2) return [];
+      if (gone.length < 2 || hooks?.cancelled()) return [];
       const shifts = shiftsOf(gone);
       return shifts ? [{ kind: 'block', what: `${grouping.name} = ${grouping.values[group]}`, gone, shifts }] : [];
     });

@@ -1,4 +1,5 @@
-import { errorOf } from '../estimate/fit-at';
+import { type Covariance, independent } from '../algebra/covariance';
+import { errorOf } from '../algebra/factored';
 import type { Fitted } from '../estimate/fitted';
 import type { SmallestDeparture } from '../protocol/result';
 
@@ -6,7 +7,12 @@ type Errors = SmallestDeparture['errors'];
 
 /** Root of diag C Omega' C' for independent errors of the variances given, C held. */
 export function errorsUnder(fitted: Fitted, variances: Float64Array): Errors {
-  return errorsFrom(fitted, (pull) => errorOf(pull, variances));
+  return errorsThrough(fitted, independent(variances));
+}
+
+/** The same for errors of any covariance. */
+export function errorsThrough(fitted: Fitted, omega: Covariance): Errors {
+  return errorsFrom(fitted, (pull) => errorOf(pull, omega));
 }
 
 /** The error that every row of C has, by a rule of its own. */

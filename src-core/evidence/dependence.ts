@@ -26,6 +26,7 @@ function dependenceBy(frame: Frame, asked: { pairs: Pairs; cancelled: () => bool
   const { pairs, cancelled } = asked;
   const named = { by: [...pairs.by], order: pairs.order, neighbours: pairs.neighbours, pairs: pairs.total / 2 };
   if (frame.freedom < 1) return notApplicable('dependence', 'no-residual-freedom', named);
+  if (frame.fitted.correlated) return notApplicable('dependence', 'correlated', named);
   if (frame.perfect) return notApplicable('dependence', 'no-residuals', named);
   const moments = momentsOf(frame, pairs);
   const { expectation, variance } = moments;

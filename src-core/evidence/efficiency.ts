@@ -1,3 +1,5 @@
+import { timesFactor } from '../algebra/covariance';
+import { factored } from '../algebra/factored';
 import { reflectAll } from '../algebra/householder';
 import { largestOf } from '../algebra/powers-of-two';
 import type { Fitted } from '../estimate/fitted';
@@ -10,16 +12,18 @@ import { solvedUnder } from './frame';
  *
  *     |X'X|^2 / (|X' Omega X| |X' Omega^-1 X|)
  *
- * By the triangles of an orthonormal basis of X under either weighting: units do not enter, and the condition of X costs no digits.
+ * By the triangles of an orthonormal basis of X under either weighting: units do not enter, and the condition of X costs no digits. Null for an Omega
+ * without an inverse.
  * Source: Bloomfield & Watson 1975.
  */
-export function efficiencyOf(fitted: Fitted): number {
-  const { shape } = fitted;
+export function efficiencyOf(fitted: Fitted): number | null {
+  const { shape, omegaShape } = fitted;
   const { basis } = solvedUnder(fitted, new Float64Array(shape.length).fill(1));
-  const largest = largestOf(shape);
-  const roots = shape.map((v) => Math.sqrt(v / largest));
-  const times = logDeterminant(basis.map((q) => q.map((x, g) => x * (roots[g] as number))));
-  const over = logDeterminant(basis.map((q) => q.map((x, g) => x / (roots[g] as number))));
+  const factoring = factored(timesFactor(omegaShape, 1 / largestOf(shape)));
+  if (!factoring.ok) return null;
+  const { root, whitened } = factoring.factor;
+  const times = logDeterminant(basis.map(root));
+  const over = logDeterminant(basis.map(whitened));
   return Math.min(1, exp(-2 * (times + over)));
 }
 

@@ -1,9 +1,10 @@
+import { independent } from '../algebra/covariance';
 import { leastSquares, type Solved } from '../algebra/least-squares';
 import { leveragesOf } from '../algebra/orthonormal';
-import { errorsOf, pullsOf } from '../estimate/fit-at';
+import { heldParts } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
-import { LOG_TWO_PI } from '../estimate/likelihood';
-import { joinParts } from '../model/structure';
+import { LOG_TWO_PI } from '../estimate/likelihood-place';
+import { joinParts } from '../model/structure-join';
 import { log, pow } from '../numbers/elementary';
 import { dot, sum, sumOfSquares } from '../numbers/sums';
 import type { Estimate } from '../protocol/plan';
@@ -55,7 +56,7 @@ export function exponentFit(of: {
     restrictedLogLikelihood: -(freedom * (LOG_TWO_PI + log(rss / freedom) + 1) + logShape + logGram) / 2,
     slope: (sizes.total - cells * pulled) / 2,
     restrictedSlope: (sizes.total - dot(leverages, sizes.logs) - freedom * pulled) / 2,
-    fitted: () => fittedWith({ fitted, shape, solved, leverages, rss }),
+    fitted: () => fittedWith({ fitted, shape, solved, rss }),
   };
 }
 
@@ -87,36 +88,22 @@ function fittedWith(of: {
   readonly fitted: Fitted;
   readonly shape: Float64Array;
   readonly solved: Solved;
-  readonly leverages: Float64Array;
   readonly rss: number;
 }): Fitted {
-  const { fitted, shape, solved, leverages, rss } = of;
+  const { fitted, shape, solved, rss } = of;
   const cells = shape.length;
   const estimate: Estimate = fitted.estimate.method === 'full' ? { method: 'full' } : { method: 'least-squares' };
   const scale = rss / (estimate.method === 'full' ? cells : fitted.residualFreedom);
-  const variances = shape.map((a) => a * scale);
-  const covariance = solved.gramInverse.map((row) => row.map((value) => value * scale));
-  const pulls = pullsOf(solved, shape);
+  const omegaShape = independent(shape);
   const sampling = { kind: 'size-power', scale: 'free', at: () => shape, slopeAt: null } as const;
   return {
     ...fitted,
     structure: joinParts({ cells, sampling, between: 'none', fixed: {} }),
     estimate,
     theta: Float64Array.of(scale),
-    variances,
-    shape,
+    ...heldParts({ solved, omegaShape, weighting: omegaShape, scale, targetIsStructure: true }),
     scale,
-    weighting: shape,
     targetIsStructure: true,
-    coefficients: solved.solution,
-    residuals: solved.residuals,
-    whitened: solved.whitened,
-    covariance,
-    errors: errorsOf({ covariance, pulls, variances }),
-    pulls,
-    gramInverse: solved.gramInverse,
-    leverages,
     estimatedParameters: 1,
-    condition: solved.condition,
   };
 }

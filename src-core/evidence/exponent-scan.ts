@@ -24,7 +24,7 @@ export interface ExponentScan {
  * l is the method's own likelihood, the full one for least squares, with the scale profiled out; its ends are solved for, not read off the grid.
  * A term's range runs over the whole support, and so does the statement that its interval excludes zero. Intervals are the plan's robust ones
  * where it asks for those, else model-based with t on G - k.
- * Nothing where no size stands, where all sizes are equal, and where no residual is left to judge by; nor of a cancelled run (`hooks`).
+ * Nothing where no size stands, where all sizes are equal, under maximum likelihood with a link, and where no residual is left to judge by; nor of a cancelled run (`hooks`).
  *
  * Source: Carroll & Ruppert 1988; METHODS of the program, 6.
  */
@@ -37,7 +37,8 @@ export function exponentScanOf(of: {
   const { fitted, cells, plan, hooks } = of;
   const sizes = cells.effectiveSize;
   const nothing: ExponentScan = { scan: [], support: null, ends: [] };
-  if (!sizes || sizes.every((m) => m === sizes[0])) return nothing;
+  // The working response of a link has its variance from the means, whatever the sizes.
+  if (!sizes || sizes.every((m) => m === sizes[0]) || fitted.fixedPoint?.link) return nothing;
   const course = courseOf({ fitted, sizes, cells, plan, hooks });
   if (!course.at(0)) return nothing;
   const scan: ScanPoint[] = [];
@@ -95,10 +96,11 @@ function courseOf(of: {
 /** The plan under which a point of the scan is judged: its own structure, no target but it. */
 function scanPlan(plan: Plan): Plan {
   const { inference } = plan;
+  const kept = inference.kind === 'robust' || inference.kind === 'clustered' || inference.kind === 'wild';
   return {
     ...plan,
     variance: { parts: [{ kind: 'size-power', exponent: 1, correlation: null }], fixed: {} },
     target: 'structure',
-    inference: inference.kind === 'robust' ? inference : { kind: 'model', level: inference.level },
+    inference: kept ? inference : { kind: 'model', level: inference.level },
   };
 }

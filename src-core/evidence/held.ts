@@ -1,11 +1,11 @@
+import { takeCovariance } from '../algebra/covariance';
 import { leastSquares } from '../algebra/least-squares';
-import { leveragesOf } from '../algebra/orthonormal';
-import { throughDiagonal } from '../algebra/through-diagonal';
-import { errorsOf, pullsOf } from '../estimate/fit-at';
+import { heldParts } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
+import { takeStructure } from '../model/structure-join';
 import { takeRows } from '../numbers/decimals';
 import { sumOfSquares } from '../numbers/sums';
-import { take, takeDesign, takeStructure } from './subset';
+import { takeDesign } from './subset';
 
 /**
  * The same model on some of the cells, or on all in another order: variance parameters held, a free common scale alone re-estimated.
@@ -21,37 +21,23 @@ export function heldFit(fitted: Fitted, rows: readonly number[]): Fitted | null 
   const design = takeDesign(fitted.design, rows);
   if (rows.length < design.names.length) return null;
   const response = takeRows(fitted.response, rows);
-  const shape = take(fitted.shape, rows);
-  const weighting = fitted.targetIsStructure ? shape : take(fitted.weighting, rows);
-  const solved = leastSquares({ columns: design.columns, y: response, variances: weighting });
+  const omegaShape = takeCovariance(fitted.omegaShape, rows);
+  const { targetIsStructure } = fitted;
+  const weighting = targetIsStructure ? omegaShape : takeCovariance(fitted.weighting, rows);
+  const solved = leastSquares({ columns: design.columns, y: response, covariance: weighting });
   if ('dependent' in solved) return null;
-  const whitened = solved.residuals.map((r, g) => r / Math.sqrt(shape[g] as number));
-  const scale = fitted.scale === null ? null : heldScale(fitted, whitened);
+  const scale = fitted.scale === null ? null : heldScale(fitted, solved.whitened);
   const theta = fitted.theta.slice();
   if (scale !== null && fitted.structure.scaleAt >= 0) theta[fitted.structure.scaleAt] = scale;
-  const variances = shape.map((v) => v * (scale ?? 1));
-  const pulls = pullsOf(solved, weighting);
-  const covariance = throughDiagonal(pulls, variances);
   return {
     ...fitted,
+    ...heldParts({ solved, omegaShape, weighting, scale, targetIsStructure }),
     response,
     design,
     structure: takeStructure(fitted.structure, rows),
     theta,
-    variances,
-    shape,
     scale,
-    weighting,
-    coefficients: solved.solution,
-    residuals: solved.residuals,
-    whitened,
-    covariance,
-    errors: errorsOf({ covariance, pulls, variances }),
-    pulls,
-    gramInverse: solved.gramInverse,
-    leverages: leveragesOf(solved.basis, rows.length),
     residualFreedom: rows.length - design.names.length,
-    condition: solved.condition,
   };
 }
 

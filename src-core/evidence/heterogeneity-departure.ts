@@ -1,9 +1,11 @@
+import type { Covariance } from '../algebra/covariance';
+import { factorOf } from '../algebra/factored';
 import { leveragesOf, projectOut } from '../algebra/orthonormal';
 import { chiSquareUpperQuantile } from '../numbers/distributions';
 import { plainSquares } from '../numbers/sums';
 import type { NoDeparture } from '../protocol/evidence';
 import type { SmallestDeparture } from '../protocol/result';
-import { errorsUnder } from './departure-errors';
+import { errorsThrough } from './departure-errors';
 import { MOST_SIMULATED, oftenEnough } from './draws';
 import type { Frame } from './frame';
 import { upperOfSum } from './quadratic-form';
@@ -17,12 +19,19 @@ const LARGEST_MULTIPLE = 1e6;
 export interface Common {
   readonly basis: readonly Float64Array[];
   readonly errors: Float64Array;
+  /** Omega with a tau^2 beside sampling. */
+  readonly omegaWith: (tau2: number) => Covariance;
+  /** True where Omega has blocks: by a matrix, or by a between part that correlates cells. */
+  readonly linked: boolean;
   readonly q: number;
   /** tr M, M = W - W X (X'WX)^-1 X'W. */
   readonly traceM: number;
 }
 
-/** The smallest tau^2 at which Q rejects with power .8: by draws up to 200 cells, beyond by a scaled chi-square of Q's moments. */
+/**
+ * The smallest tau^2 at which Q rejects with power .8: by draws up to 200 cells, beyond by a scaled chi-square of Q's moments, which correlated cells
+ * do not have here.
+ */
 export function heterogeneityDeparture(known: {
   readonly frame: Frame;
   readonly common: Common;
@@ -42,26 +51,26 @@ export function heterogeneityDeparture(known: {
     near,
   });
   const simulated = frame.count <= MOST_SIMULATED;
+  if (!simulated && common.linked) return 'too-many-cells';
   const draws = simulated ? frame.draws() : [];
-  const found = (tau2: number) => cancelled() || oftenFound({ draws, common, critical }, ratiosAt(tau2));
+  const found = (tau2: number) => cancelled() || oftenFound({ draws, common, critical }, tau2);
   const tau2 = simulated ? smallest({ found, guess: roughly ?? guess, limit, near }) : roughly;
   if (cancelled()) return 'cancelled';
   if (tau2 === null) return 'out-of-reach';
-  const variances = common.errors.map((s) => s * s + tau2);
-  return { measure: 'tau2', size: tau2, errors: errorsUnder(frame.fitted, variances) };
+  return { measure: 'tau2', size: tau2, errors: errorsThrough(frame.fitted, common.omegaWith(tau2)) };
 }
 
 function oftenFound(
-  known: { draws: readonly Float64Array[]; common: Common; critical: number },
-  ratios: Float64Array,
+  { draws, common, critical }: { draws: readonly Float64Array[]; common: Common; critical: number },
+  tau2: number,
 ): boolean {
-  const roots = ratios.map((d) => Math.sqrt(d));
-  const errors = new Float64Array(roots.length);
-  const residuals = new Float64Array(roots.length);
-  return oftenEnough(known.draws, (draw) => {
-    for (let g = 0; g < errors.length; g++) errors[g] = (draw[g] as number) * (roots[g] as number);
-    return plainSquares(projectOut(known.common.basis, errors, residuals)) > known.critical;
-  });
+  const residuals = new Float64Array(common.errors.length);
+  const { whitened } = factorOf(common.omegaWith(0));
+  const { unwhiten } = factorOf(common.omegaWith(tau2));
+  return oftenEnough(
+    draws,
+    (draw) => plainSquares(projectOut(common.basis, whitened(unwhiten(draw)), residuals)) > critical,
+  );
 }
 
 /** Mean tr(MD) and variance 2 tr(MDMD) of Q under whitened variances d, M = I - QQ'. */

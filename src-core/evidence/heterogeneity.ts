@@ -1,20 +1,23 @@
-import { leveragesOf } from '../algebra/orthonormal';
-import { errorOf } from '../estimate/fit-at';
+import type { Covariance } from '../algebra/covariance';
+import { errorOf, factored } from '../algebra/factored';
+import { leastSquares } from '../algebra/least-squares';
+import { omegaAt } from '../model/structure';
 import { chiSquareUpper, normalUpperQuantile, tUpperQuantile } from '../numbers/distributions';
 import { lengthOf, plainSquares } from '../numbers/sums';
 import type { DetailValue, Evidence } from '../protocol/result';
-import { type Frame, solvedUnder } from './frame';
+import type { Frame } from './frame';
 import { type Common, heterogeneityDeparture } from './heterogeneity-departure';
 import { evidenceOf, notApplicable, withDeparture } from './reading';
 
 /**
  * Do cells differ beyond their given errors?
  *
- *     Q = r'Wr of the fit weighted by W = 1 / s^2, chi-square on G - k
+ *     Q = r'Wr of the fit weighted by W = 1 / s^2, or by the inverse of a given matrix, chi-square on G - k
  *     I^2 = max(0, 1 - (G-k) / Q), H^2 = Q / (G-k);  with tau^2: I^2 = tau^2 / (tau^2 + s), H^2 = 1 + tau^2 / s, s = (G-k) / tr M
  *     prediction: x'b -/+ q root(tau^2 + x' Var(b) x), the true value of a new cell; x: the columns' means over the cells
  *
- * Only where the structure is given errors of fixed scale, alone or with a between part; not applicable otherwise.
+ * Only where the structure is given errors or a matrix of fixed scale, alone or with a between part; not applicable otherwise, nor to a matrix
+ * without an inverse.
  * detail: iSquaredQ, hSquaredQ, iSquaredTau2, hSquaredTau2 (null without tau^2), prediction by the normal, t with G - k and with
  * G - k - 1 (empty without tau^2), predictionAt (x by coefficient), level.
  * Source: Cochran 1954; Higgins & Thompson 2002; Higgins, Thompson & Spiegelhalter 2009.
@@ -25,6 +28,7 @@ export function heterogeneity(frame: Frame, cancelled: () => boolean): Evidence 
   if (frame.freedom < 1) return notApplicable(test, 'no-residual-freedom');
   const { fitted, freedom } = frame;
   const common = commonOf(frame);
+  if (!common) return notApplicable(test, 'structure');
   const tau2 = fitted.structure.betweenAt < 0 ? null : (fitted.theta[fitted.structure.betweenAt] as number);
   const typical = freedom / common.traceM;
   const detail = {
@@ -42,18 +46,43 @@ export function heterogeneity(frame: Frame, cancelled: () => boolean): Evidence 
 function hasGivenErrors({ plan }: Frame): boolean {
   const others = plan.variance.parts.filter((part) => part.kind !== 'between');
   const [part] = others;
-  return others.length === 1 && part?.kind === 'given' && part.scale === 'fixed';
+  if (others.length !== 1 || part === undefined) return false;
+  if (part.kind === 'matrix') return part.scale === 'fixed';
+  return part.kind === 'given' && part.scale === 'fixed' && part.correlation === null;
 }
 
-function commonOf({ fitted }: Frame): Common {
-  const { sampling } = fitted.structure;
-  const { basis, whitened } = solvedUnder(fitted, sampling);
-  const leverages = leveragesOf(basis, sampling.length);
+/** Null where the errors have no inverse, or leave nothing to tell the columns apart by. */
+function commonOf({ fitted }: Frame): Common | null {
+  const { structure, theta, design, response } = fitted;
+  const { betweenAt } = structure;
+  const own = omegaAt(structure, betweenAt < 0 ? theta : theta.with(betweenAt, 0));
+  const omegaWith = (tau2: number): Covariance =>
+    betweenAt < 0 ? withDiagonal(own, tau2) : omegaAt(structure, theta.with(betweenAt, tau2));
+  const factoring = factored(own);
+  if (!factoring.ok) return null;
+  const solved = leastSquares({ columns: design.columns, y: response, covariance: own });
+  if ('dependent' in solved) return null;
+  const { inverseDiagonal, backwards } = factoring.factor;
+  const taken = solved.basis.reduce((sum, q) => sum + plainSquares(backwards(q)), 0);
   return {
-    basis,
-    errors: sampling.map(Math.sqrt),
-    q: plainSquares(whitened),
-    traceM: sampling.reduce((sum, v, g) => sum + (1 - (leverages[g] as number)) / v, 0),
+    basis: solved.basis,
+    errors: own.diagonal.map(Math.sqrt),
+    omegaWith,
+    linked: structure.links !== null,
+    q: plainSquares(solved.whitened),
+    traceM: inverseDiagonal().reduce((sum, w) => sum + w, 0) - taken,
+  };
+}
+
+/** Independent errors of one variance more on every cell. */
+function withDiagonal({ diagonal, blocks }: Covariance, more: number): Covariance {
+  return {
+    diagonal: diagonal.map((v) => v + more),
+    blocks:
+      blocks?.map(({ cells, matrix }) => ({
+        cells,
+        matrix: matrix.map((value, i) => (i % (cells.length + 1) === 0 ? value + more : value)),
+      })) ?? null,
   };
 }
 
@@ -63,7 +92,7 @@ function predictionOf({ fitted, design, freedom, plan }: Frame, tau2: number) {
   const pull = fitted.response.high.map((_, g) =>
     x.reduce((sum, value, j) => sum + value * ((fitted.pulls[j] as Float64Array)[g] as number), 0),
   );
-  const spread = lengthOf([Math.sqrt(tau2), errorOf(pull, fitted.variances)]);
+  const spread = lengthOf([Math.sqrt(tau2), errorOf(pull, fitted.omega)]);
   const { level } = plan.inference;
   const tail = (1 - level) / 2;
   const entry = (kind: 'normal' | 't', degrees: number | null): DetailValue => {

@@ -1,5 +1,6 @@
+import { factorOf } from '../algebra/factored';
 import type { Fitted } from '../estimate/fitted';
-import { pairAt } from '../numbers/decimals';
+import { type Decimals, pairAt } from '../numbers/decimals';
 import {
   add,
   divide,
@@ -14,6 +15,7 @@ import {
 
 /** Work G k^2 beyond which this route is not taken: it is a check, and must not outlast what it checks. */
 const WORK = 2e6;
+const ONE: Pair = [1, 0];
 
 /**
  * The coefficients of a fit by another route than the one that made them: normal equations summed in double-double, solved by Cholesky.
@@ -28,10 +30,11 @@ export function byNormalEquations(fitted: Fitted): Float64Array | null {
   const { design, response } = fitted;
   const k = design.columns.length;
   if (response.high.length * k * k > WORK) return null;
-  const columns = [...design.columns, response];
-  const weights = Array.from(fitted.targetIsStructure ? fitted.shape : fitted.weighting, (a) =>
-    divide([1, 0], fromNumber(a)),
-  );
+  const { weighting } = fitted;
+  // Cells that go together are whitened first; what is solved afterwards has the same weights.
+  const whiten = weighting.blocks ? factorOf(weighting).whiten : (column: Decimals): Decimals => column;
+  const columns = [...design.columns, response].map(whiten);
+  const weights = Array.from(weighting.diagonal, (a) => (weighting.blocks ? ONE : divide(ONE, fromNumber(a))));
   const products = columns.map(() => columns.map((): Pair => ZERO));
   for (const [g, weight] of weights.entries()) {
     const row = columns.map((column) => pairAt(column, g));

@@ -1,12 +1,12 @@
+import { type Covariance, takeCovariance, throughCovariance, timesFactor } from '../algebra/covariance';
 import { symmetricEigenvalues } from '../algebra/dense';
+import { errorOf, factored, factorOf } from '../algebra/factored';
 import { largestOf, powerOfTwoBelow } from '../algebra/powers-of-two';
-import { throughDiagonal } from '../algebra/through-diagonal';
 import { underStructure } from '../estimate/fit';
-import { errorOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
 import type { RivalFit } from '../inference/fits';
 import { numberOrNull } from '../inference/reference';
-import { sumOfSquares } from '../numbers/sums';
+import { sum, sumOfSquares } from '../numbers/sums';
 import type { BesideResult, Price, SquareEntry } from '../protocol/result';
 import { efficiencyOf } from './efficiency';
 
@@ -20,30 +20,39 @@ import { efficiencyOf } from './efficiency';
  *
  * C_GLS weights by the fitted Omega: under another target it is not the chosen C. Costs and efficiency are of the shape of Omega, a free scale
  * left out: it cancels, and may be 0 or undefined. What depends on it is null where as many cells as terms leave none.
+ * An Omega without an inverse (a matrix of few degrees of freedom) has no best weighting to measure against: costs and eigenvalues are null.
  */
 export function pricesOf(of: { readonly fitted: Fitted; readonly rivals: readonly RivalFit[] }): BesideResult[] {
   const { fitted, rivals } = of;
-  const best = underStructure(fitted).pulls;
-  const units = best.map((row) => powerOfTwoBelow(largestOf(row)));
+  // Under a link weights act on the working response; variances are told of the observed one.
+  const slopes = fitted.fixedPoint?.link?.slopes;
+  const best = factored(fitted.omegaShape).ok ? underStructure(fitted).pulls : null;
+  const units = (best ?? fitted.pulls).map((row) => powerOfTwoBelow(largestOf(row)));
   const inUnits = (rows: Square): Square => rows.map((row, j) => row.map((c) => c / (units[j] as number)));
-  const least = throughDiagonal(inUnits(best), fitted.shape);
+  const least = best && throughCovariance(inUnits(best), fitted.omegaShape);
   return rivals.map(({ rival, fitted: beside, ...told }): BesideResult => {
-    const apart = inUnits(differenceOf(beside.pulls, best));
-    const excess = throughDiagonal(apart, fitted.shape);
-    const actual = least.map((row, i) => row.map((value, j) => value + at(excess, i, j)));
+    const excess = best && throughCovariance(inUnits(differenceOf(beside.pulls, best)), fitted.omegaShape);
+    const actual =
+      least && excess
+        ? least.map((row, i) => row.map((value, j) => value + at(excess, i, j)))
+        : throughCovariance(inUnits(beside.pulls), fitted.omegaShape);
     const times = (value: number, i: number, j: number) =>
       value * (fitted.scale ?? 1) * (units[i] as number) * (units[j] as number);
     return {
       variance: rival,
       parameters: told.parameters,
-      variances: Array.from(beside.variances.every(Number.isFinite) ? beside.variances : beside.shape),
+      variances: Array.from(beside.variances.every(Number.isFinite) ? beside.variances : beside.shape, (v, g) =>
+        slopes ? v * (slopes[g] as number) * (slopes[g] as number) : v,
+      ),
       logLikelihood: told.logLikelihood,
       restrictedLogLikelihood: told.restrictedLogLikelihood,
       coefficients: told.coefficients,
       price: priceOf({ fitted, beside, units, least, excess, actual }),
       actualCovariance: actual.map((row, i) => Array.from(row, (value, j) => numberOrNull(times(value, i, j)))),
-      eigenvalues: eigenvaluesOf(excess.map((row, i) => row.map((value, j) => times(value, i, j)))),
-      efficiency: equalThroughout(beside.shape) ? efficiencyOf(fitted) : null,
+      eigenvalues: excess
+        ? eigenvaluesOf(excess.map((row, i) => row.map((value, j) => times(value, i, j))))
+        : actual.map(() => null),
+      efficiency: !beside.correlated && equalThroughout(beside.shape) ? efficiencyOf(fitted) : null,
       moved: movedOf(fitted, beside),
     };
   });
@@ -62,8 +71,8 @@ function priceOf(of: {
   readonly fitted: Fitted;
   readonly beside: Fitted;
   readonly units: readonly number[];
-  readonly least: Square;
-  readonly excess: Square;
+  readonly least: Square | null;
+  readonly excess: Square | null;
   readonly actual: Square;
 }): Price[] {
   const { fitted, beside, units, least, excess, actual } = of;
@@ -77,7 +86,7 @@ function priceOf(of: {
       claimedSe,
       expectedClaimedSe: expected === null ? null : numberOrNull(Math.sqrt(expected) * unscaledError(beside, j)),
       actualSe,
-      cost: at(excess, j, j) / at(least, j, j),
+      cost: least && excess ? at(excess, j, j) / at(least, j, j) : null,
       claimedOverActual: claimedSe === null || actualSe === null ? null : numberOrNull(claimedSe / actualSe),
     };
   });
@@ -90,15 +99,37 @@ function priceOf(of: {
 function expectedScale(fitted: Fitted, beside: Fitted): number | null {
   if (beside.scale === null) return beside.estimatedParameters === 0 ? 1 : null;
   if (beside.residualFreedom <= 0 || beside.estimatedParameters > 1) return null;
-  let trace = 0;
-  for (const [g, a] of beside.shape.entries())
-    trace += ((fitted.variances[g] as number) / a) * (1 - (beside.leverages[g] as number));
-  return trace / beside.residualFreedom;
+  return traceUnder(fitted, beside) / beside.residualFreedom;
+}
+
+/** tr(M_A Omega) = tr(A^-1 Omega) - sum over the orthonormal basis q of |P'A^-1/2 q|^2. */
+function traceUnder(fitted: Fitted, beside: Fitted): number {
+  if (!fitted.correlated && !beside.correlated) {
+    let trace = 0;
+    for (const [g, a] of beside.shape.entries())
+      trace += ((fitted.variances[g] as number) / a) * (1 - (beside.leverages[g] as number));
+    return trace;
+  }
+  const { backwards, inverseAmong, inverseDiagonal } = factorOf(beside.omegaShape);
+  const own = inverseDiagonal();
+  let trace = sum(fitted.variances.map((v, g) => v * (own[g] as number)));
+  for (const { cells } of beside.omegaShape.blocks ?? []) {
+    const inverse = inverseAmong(cells);
+    const [block] = takeCovariance(fitted.omega, cells).blocks ?? [];
+    for (const [a, g] of (block?.cells ?? []).entries())
+      for (const [b, h] of (block?.cells ?? []).entries())
+        if (a !== b)
+          trace += (inverse[g * cells.length + h] as number) * (block?.matrix[a * block.cells.length + b] as number);
+  }
+  return beside.basis.reduce((left, q) => {
+    const error = errorOf(backwards(q), fitted.omega);
+    return left - error * error;
+  }, trace);
 }
 
 /** Root of (X'A^-1X)^-1_jj, A the shape. */
-function unscaledError({ pulls, shape }: Fitted, j: number): number {
-  return errorOf(pulls[j] as Float64Array, shape);
+function unscaledError({ pulls, omegaShape }: Fitted, j: number): number {
+  return errorOf(pulls[j] as Float64Array, omegaShape);
 }
 
 /** Which cells move the answer from the chosen weighting to the rival's: (C_A - C)_jg r_g, r under the chosen fit; a row sums to b_A - b. */
@@ -121,20 +152,20 @@ function movedOf(fitted: Fitted, beside: Fitted): BesideResult['moved'] {
  */
 export function squareOf(fits: readonly Fitted[]): SquareEntry[] {
   return fits.flatMap((truth, t) => {
-    const variances = t === 0 ? truth.variances : ownTruth(truth);
+    const omega = t === 0 ? truth.omega : ownTruth(truth);
     return fits.flatMap((weighting, w) =>
       weighting.design.names.map((term, j): SquareEntry => {
-        const se = numberOrNull(errorOf(weighting.pulls[j] as Float64Array, variances));
+        const se = numberOrNull(errorOf(weighting.pulls[j] as Float64Array, omega));
         return { truth: t, weighting: w, term, se };
       }),
     );
   });
 }
 
-function ownTruth(fitted: Fitted): Float64Array {
-  if (fitted.scale === null) return fitted.variances;
+function ownTruth(fitted: Fitted): Covariance {
+  if (fitted.scale === null) return fitted.omega;
   const scale = fitted.residualFreedom > 0 ? sumOfSquares(fitted.whitened) / fitted.residualFreedom : Number.NaN;
-  return fitted.shape.map((a) => scale * a);
+  return timesFactor(fitted.omegaShape, scale);
 }
 
 function at(rows: Square, i: number, j: number): number {

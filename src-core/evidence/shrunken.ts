@@ -1,5 +1,5 @@
+import { independent, throughCovariance } from '../algebra/covariance';
 import { largestOf } from '../algebra/powers-of-two';
-import { throughDiagonal } from '../algebra/through-diagonal';
 import type { Fitted } from '../estimate/fitted';
 import { tau2BiasOf } from '../inference/tau2-bias';
 import type { Parameter } from '../model/structure';
@@ -13,21 +13,22 @@ export interface Shrunken {
 }
 
 /**
- * Each cell's estimate drawn towards the fit, by how much of its variance is sampling; null where no between part stands.
+ * Each cell's estimate drawn towards the fit, by how much of its variance is sampling; null where no between part stands, and where cells are
+ * correlated: an estimate would draw on the others too.
  *
  *     own share = tau^2 / (tau^2 + D_g),  D = the sampling variance; estimate = own share y + (1 - own share) x'b
  *     mse = g1 + g2 + 2 g3, full likelihood less b (1 - own share)^2
  *     g1 = own share D,  g2 = (1 - own share)^2 x' Phi x,  g3 = (d own share / d theta)' W (d own share / d theta) (tau^2 + D)
  *
  * W: the covariance of the variance parameters; of tau^2 alone 2 / sum (tau^2 + D)^-2, of (tau^2, phi) the inverse restricted information.
- * Parameters that the user fixed do not count. The mean squared error is null for moment rules, two-step fits, other targets, an estimated
- * exponent, and a full likelihood that estimates phi: no expansion is known here for those.
+ * Parameters that the user fixed do not count. The mean squared error is null for variances that follow from fitted means, moment rules, two-step fits, other targets, an estimated
+ * exponent, gamma or class, and a full likelihood that estimates phi: no expansion is known here for those.
  *
  * Source: Fay & Herriot 1979; Prasad & Rao 1990; Datta & Lahiri 2000.
  */
 export function shrunkenOf(fitted: Fitted): Shrunken[] | null {
   const { structure, theta } = fitted;
-  if (structure.betweenAt < 0) return null;
+  if (structure.betweenAt < 0 || fitted.correlated) return null;
   const between = theta[structure.betweenAt] as number;
   const spread = spreadOf(fitted);
   const bias = spread === null ? 0 : biasOf(fitted);
@@ -72,12 +73,14 @@ function thirdPart(of: {
 
 function spreadOf(fitted: Fitted): Spread | null {
   const { structure, estimate } = fitted;
-  if (!fitted.targetIsStructure) return null;
+  if (!fitted.targetIsStructure || fitted.fixedPoint) return null;
   const free = (at: number): boolean => at >= 0 && (structure.parameters[at] as Parameter).fixed === null;
-  const exponent = structure.parameters.some(({ role, fixed }) => role === 'exponent' && fixed === null);
+  const others = structure.parameters.some(
+    ({ role, fixed }) => role !== 'between' && role !== 'scale' && fixed === null,
+  );
   const betweenFree = free(structure.betweenAt);
   const scaleFree = free(structure.scaleAt);
-  if (exponent) return null;
+  if (others) return null;
   const unit = fitted.variances.reduce((least, v) => Math.min(least, v), Infinity);
   if (!betweenFree && !scaleFree) return { unit, between: 0, joint: 0, scale: 0 };
   if (estimate.method !== 'restricted' && (estimate.method !== 'full' || scaleFree)) return null;
@@ -123,9 +126,9 @@ function restrictedInformation(fitted: Fitted, a: Float64Array, b: Float64Array)
 /** C diag(a) Omega^-1 X: rows i, columns j. */
 function throughPulls({ pulls, design, variances }: Fitted, a: Float64Array): Float64Array[] {
   const shares = a.map((value, g) => value / (variances[g] as number));
-  return throughDiagonal(
+  return throughCovariance(
     pulls,
-    shares,
+    independent(shares),
     design.columns.map(({ high }) => high),
   );
 }

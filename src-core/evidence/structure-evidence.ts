@@ -5,7 +5,7 @@ import type { Evidence, EvidenceTest } from '../protocol/result';
 import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
 import { dumouchelDuncan } from './added-columns';
-import { boundaryLikelihoodRatio } from './boundary';
+import { boundaryLikelihoodRatios } from './boundary';
 import { brownForsythe } from './brown-forsythe';
 import { dependenceOf } from './dependence';
 import { type Frame, frameOf } from './frame';
@@ -35,7 +35,7 @@ const varianceTests: readonly [EvidenceTest, (frame: Frame) => VarianceTest | Ev
  *
  * A test without a say under the structure stands with null figures, the reading "not-applicable" and `detail.why`; dependence has
  * one entry for every pairing of cells. Readings are at level .05; beside each test stands the smallest departure that it would find
- * with power .8, or `detail.departureWhy`. Under a target other than "structure" residuals are those weighted by the structure.
+ * with power .8, or `detail.departureWhy`. Tests that read whitened residuals say nothing of correlated cells: those depend on the root chosen. Under a target other than "structure" residuals are those weighted by the structure.
  * hooks: `cancelled` is asked between draws; a cancelled run ends soon, without departures.
  *
  * Source: METHODS.md of the program's design, section 4.
@@ -51,8 +51,9 @@ export function structureEvidence(known: {
   const frame = frameOf(known);
   const cancelled = () => hooks?.cancelled() ?? false;
   const silent = frame.freedom < 1 ? 'no-residual-freedom' : frame.perfect ? 'no-residuals' : null;
+  const unread = silent ?? (known.fitted.correlated ? 'correlated' : null);
   const onResiduals = (test: EvidenceTest, run: () => Evidence): Evidence =>
-    silent === null ? run() : notApplicable(test, silent);
+    unread === null ? run() : notApplicable(test, unread);
 
   return [
     ...varianceTests.map(([test, prepare], i) => {
@@ -65,7 +66,7 @@ export function structureEvidence(known: {
     onResiduals('dumouchel-duncan', () => withoutDeparture(dumouchelDuncan(frame))),
     ...dependenceOf(frame, cancelled),
     heterogeneity(frame, cancelled),
-    boundaryLikelihoodRatio(frame, cancelled),
+    ...boundaryLikelihoodRatios(frame, cancelled),
     onResiduals('shapiro-wilk', () => withoutDeparture(normalityOf(frame))),
   ];
 }

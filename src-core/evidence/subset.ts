@@ -1,5 +1,5 @@
 import type { Fitted } from '../estimate/fitted';
-import type { Structure } from '../model/structure';
+import { takeSquare } from '../model/variance-part';
 import { takeRows } from '../numbers/decimals';
 import type { Cells, NumberColumn } from '../table/cells';
 
@@ -15,11 +15,14 @@ export function takeCells(cells: Cells, rows: readonly number[]): Cells {
     size: some(cells.size),
     effectiveSize: some(cells.effectiveSize),
     error: some(cells.error),
+    ...(cells.addedHalves && { addedHalves: take(cells.addedHalves, rows) }),
     counts: some(cells.counts),
     exposure: some(cells.exposure),
     numbers: (column) => takeNumbers(cells.numbers(column), rows),
     texts: (column) => pick(cells.texts(column), rows),
+    matrices: new Map([...cells.matrices].map(([file, square]) => [file, takeSquare(square, rows)])),
     neighbours: cells.neighbours && takePairs(cells.neighbours, rows),
+    limited: null,
   };
 }
 
@@ -40,22 +43,14 @@ function takeNumbers(column: NumberColumn, rows: readonly number[]): NumberColum
   };
 }
 
-/** A structure on some of the cells: the same parameters, each cell's variance as before. */
-export function takeStructure(structure: Structure, rows: readonly number[]): Structure {
-  return {
-    ...structure,
-    sampling: take(structure.sampling, rows),
-    variancesAt: (theta) => take(structure.variancesAt(theta), rows),
-    derivativesAt: (theta) => structure.derivativesAt(theta).map((column) => take(column, rows)),
-  };
-}
-
 export function takeDesign(design: Fitted['design'], rows: readonly number[]): Fitted['design'] {
   return { ...design, columns: design.columns.map((column) => takeRows(column, rows)) };
 }
 
 export function take(values: Float64Array, rows: readonly number[]): Float64Array {
-  return Float64Array.from(rows, (row) => values[row] as number);
+  const taken = new Float64Array(rows.length);
+  for (let g = 0; g < taken.length; g++) taken[g] = values[rows[g] as number] as number;
+  return taken;
 }
 
 /** The places that are not among `gone`, in order. */

@@ -7,6 +7,7 @@ import { COLUMN, INK, PALE, SMALL_SIZE } from './ink';
 import { short } from './key';
 import { type Overlay, openSheet, type Panel, spread, xAt, yAt } from './panel';
 import { rangeAround } from './ticks';
+import { workingValues } from './working-values';
 
 const words = figureWords.beam;
 const HEIGHT = 200;
@@ -71,18 +72,17 @@ export function beamFigure(result: Result, term: string = headlineTerm(result)):
 }
 
 /** Distances from the mean are contributions over pulls; the mean itself is read off the cell of the largest pull. */
-function loadsOf({ cells }: Result, { pulls, contributions, heaviest }: Beam): Load[] {
+function loadsOf(result: Result, { pulls, contributions, heaviest }: Beam): Load[] {
+  const values = workingValues(result);
   const heavy = new Set(heaviest.cells);
   const most = pulls.reduce((at, pull, g) => (Math.abs(pull) > Math.abs(pulls[at] as number) ? g : at), 0);
   const pull = pulls[most] as number;
   const mean =
-    contributions === null || pull === 0
-      ? 0
-      : (cells[most]?.observed as number) - (contributions[most] as number) / pull;
-  return cells.map(({ label, observed }, g) => ({
+    contributions === null || pull === 0 ? 0 : (values[most] as number) - (contributions[most] as number) / pull;
+  return result.cells.map(({ label }, g) => ({
     label,
     pull: pulls[g] as number,
-    distance: observed - mean,
+    distance: (values[g] as number) - mean,
     heavy: heavy.has(label),
   }));
 }

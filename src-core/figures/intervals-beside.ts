@@ -71,10 +71,10 @@ function stripsOf(result: Result, term: string): Strip[] {
     coefficients.find((one) => one.term === term);
   const own = pick(result.fit.coefficients) as Coefficient;
   const robust = result.overturn.find(
-    (one) => one.term === term && one.change.kind === 'robust' && one.change.what === 'HC3',
+    (one) => one.term === term && one.change.kind === 'robust' && one.change.what !== 'model',
   );
   const strips: Strip[] = [{ ...own, name: words.chosen(result), chosen: true }];
-  if (robust !== undefined) strips.push({ ...robust, name: words.robust, chosen: false });
+  if (robust !== undefined) strips.push({ ...robust, name: words.robust(robust.change.what), chosen: false });
   for (const { variance, coefficients } of result.beside) {
     const there = pick(coefficients);
     if (there !== undefined) strips.push({ ...there, name: structureName(variance), chosen: false });

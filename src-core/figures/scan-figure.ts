@@ -14,6 +14,8 @@ const PANELS = 3;
 const FIRST = 132;
 const NEXT = 84;
 const BETWEEN = 26;
+/** What the words at the bracket take. */
+const TEXT_ROOM = 96;
 /** Ink that is left where the data give no support. */
 const FAINTEST = 0.1;
 
@@ -168,11 +170,13 @@ function bracket(overlay: Overlay, panel: Panel, { low, high, best, edge }: Expo
     style,
   );
   const text = `${words.supported} ${number(low, { decimals: 2 })} to ${number(high, { decimals: 2 })}`;
-  const room = panel.left + panel.width - to > 96;
+  // Beside the bracket where there is room, else under it, in from the end that it reaches.
+  const after = panel.left + panel.width - to > TEXT_ROOM;
+  const before = from - panel.left > TEXT_ROOM;
   overlay.text(text, {
-    x: room ? to + 3 : from - 3,
-    y: room || from - panel.left > 96 ? y - 1 : y + 8,
-    side: room ? 'right' : 'left',
+    x: after ? to + 3 : before ? from - 3 : from,
+    y: after || before ? y - 1 : y + 8,
+    side: after || !before ? 'right' : 'left',
     size: SMALL_SIZE,
   });
 }

@@ -29,6 +29,7 @@ const rules: readonly { readonly rule: BetweenRule['rule']; readonly estimate: E
  */
 export function betweenRulesOf(fitted: Fitted, level: number, hooks?: Hooks): BetweenRule[] {
   const { structure } = fitted;
+  if (fitted.fixedPoint) return [];
   if (structure.betweenAt < 0 || structure.scaleAt >= 0 || structure.parameters[structure.betweenAt]?.fixed !== null)
     return [];
   const q = qProfileOf(likelihoodsOf(fitted), level);

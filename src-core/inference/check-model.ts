@@ -5,22 +5,23 @@ import type { KnownTerm } from '../model/known-terms';
 import { learnTerms } from '../model/learn-terms';
 import { type OnScale, onOutcomeScale } from '../model/outcome-scale';
 import type { Structure } from '../model/structure';
-import { absentParts, structureOf, varianceOf } from '../model/structure-of';
+import { structureOf } from '../model/structure-of';
 import { done, type Outcome, refuseAll } from '../protocol/outcome';
 import type { Plan, Rival } from '../protocol/plan';
 import type { Problem } from '../protocol/problems';
 import type { Cells } from '../table/cells';
+import { checkClustersOf } from './check-clusters';
 import { checkLeverageOf } from './check-leverage';
 import { checkQuestions } from './check-questions';
 
-/** What the model stage made of a plan and its cells. Structures are null where this version does not fit them. */
+/** What the model stage made of a plan and its cells. */
 export interface Model extends OnScale {
   readonly known: readonly KnownTerm[];
   readonly design: Design;
-  readonly chosen: Structure | null;
-  /** Whose weights the estimator takes, where the target is a structure of its own. */
+  readonly chosen: Structure;
+  /** Whose weights the estimator takes, where the target is a structure of its own; else null. */
   readonly target: Structure | null;
-  readonly rivals: readonly (Structure | null)[];
+  readonly rivals: readonly Structure[];
   readonly hardlySeparate: Identification['hardlySeparate'];
 }
 
@@ -38,43 +39,43 @@ export function checkModel({ plan, cells }: { readonly plan: Plan; readonly cell
   if (!known.ok) return known;
   const design = designOf(known.value, cells);
   if (!design.ok) return design;
+  const cut = clustersThatCut(plan, cells);
   const problems: Problem[] = [
     ...checkQuestions({ plan, design: design.value, known: known.value }),
     ...checkLeverageOf({ plan, design: design.value, labels: cells.labels }),
-    ...clustersThatCut(plan, cells),
+    ...cut,
+    ...(cut.length > 0 ? [] : checkClustersOf({ plan, design: design.value, cells })),
   ];
-  const take = (rival: Rival, at: string): Judged => {
+  const take = (rival: Rival, at: string): Judged | null => {
     const judged = judge(rival, { at, design: design.value, cells: scaled.value.cells });
     if (judged.ok) return judged.value;
     problems.push(...judged.problems);
-    return unjudged;
+    return null;
   };
   const chosen = take(plan.variance, '/variance');
-  const target = typeof plan.target === 'string' ? unjudged : take(plan.target, '/target');
-  const rivals = plan.beside.map((rival, i) => take(rival, `/beside/${i}`).structure);
-  if (problems.length > 0) return refuseAll(problems);
-  const structures = { chosen: chosen.structure, target: target.structure, rivals };
+  const target = typeof plan.target === 'string' ? null : take(plan.target, '/target');
+  const rivals = plan.beside.flatMap((rival, i) => take(rival, `/beside/${i}`) ?? []);
+  if (problems.length > 0 || !chosen) return refuseAll(problems);
   return done({
     ...scaled.value,
     known: known.value,
     design: design.value,
-    ...structures,
+    chosen: chosen.structure,
+    target: target?.structure ?? null,
+    rivals: rivals.map(({ structure }) => structure),
     hardlySeparate: chosen.hardlySeparate,
   });
 }
 
 interface Judged {
-  readonly structure: Structure | null;
+  readonly structure: Structure;
   readonly hardlySeparate: Identification['hardlySeparate'];
 }
-
-const unjudged: Judged = { structure: null, hardlySeparate: null };
 
 function judge(
   rival: Rival,
   { at, design, cells }: { readonly at: string; readonly design: Design; readonly cells: Cells },
 ): Outcome<Judged> {
-  if (absentParts(varianceOf(rival).parts, at).length > 0) return done(unjudged);
   const structure = structureOf({ variance: rival, cells, at });
   if (!structure.ok) return structure;
   const identified = identificationOf({ design, structure: structure.value, at });

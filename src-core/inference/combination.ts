@@ -28,7 +28,13 @@ export function combinationOf(known: {
   return estimatedOf({ estimate, se, reference, level });
 }
 
-/** The same with a two-sided p value against a stated value. */
-export function testedAgainst(value: number, estimated: Estimated): Estimated & { p: number | null } {
-  return { ...estimated, p: judged(estimated.estimate - value, estimated).p };
+/** The same with a two-sided p value against a stated value, by the reference or by draws. */
+export function testedAgainst(
+  value: number,
+  known: Parameters<typeof combinationOf>[0],
+): Estimated & { p: number | null } {
+  const estimated = combinationOf(known);
+  const { drawnP } = known.inferred;
+  const p = drawnP ? drawnP(known.multipliers, value) : judged(estimated.estimate - value, estimated).p;
+  return { ...estimated, p };
 }

@@ -1,3 +1,4 @@
+import { factored } from '../algebra/factored';
 import { underStructure } from '../estimate/fit';
 import type { Fitted } from '../estimate/fitted';
 import { chiSquareUpper } from '../numbers/distributions';
@@ -9,7 +10,7 @@ import type { Cells } from '../table/cells';
 import { informationCriteria } from './criteria';
 import { goodnessOfFit } from './goodness';
 import type { Inferred } from './inferred';
-import { isRestricted, type Likelihoods, likelihoodsOf, ownLikelihood } from './likelihoods';
+import { isRestricted, type Likelihoods, likelihoodsOf, ownLikelihood, toldLikelihoods } from './likelihoods';
 import { samplingShareOf } from './sampling-share';
 import { tau2BiasOf } from './tau2-bias';
 import { varianceParametersOf } from './variance-parameters';
@@ -34,6 +35,7 @@ export function fitResultOf(known: {
   const { fitted, inferred, cells, plan, carriedBy } = known;
   const likelihoods = known.likelihoods ?? likelihoodsOf(fitted);
   const { residualFreedom } = fitted;
+  const told = toldLikelihoods(likelihoods);
   const weightedRss = sumOfSquares(fitted.whitened);
   return {
     estimate: plan.estimate,
@@ -45,10 +47,9 @@ export function fitResultOf(known: {
     residualSd: residualFreedom > 0 ? Math.sqrt(weightedRss / residualFreedom) : null,
     weightedRss,
     residualFreedom,
-    logLikelihood: likelihoods.full,
-    restrictedLogLikelihood: likelihoods.restricted,
+    ...told,
     ...informationCriteria({
-      logLikelihood: ownLikelihood(likelihoods),
+      logLikelihood: fitted.fixedPoint ? told.logLikelihood : ownLikelihood(likelihoods),
       cells: cells.count,
       coefficients: fitted.coefficients.length,
       varianceParameters: fitted.estimatedParameters,
@@ -56,10 +57,10 @@ export function fitResultOf(known: {
     }),
     rSquared: goodnessOfFit(fitted),
     chiSquare: chiSquareOf(fitted),
-    deviance: null,
+    deviance: fitted.fixedPoint?.deviance ?? null,
     knappHartungQ: inferred.knappHartungQ,
     tau2Bias: biasOf(fitted),
-    wild: null,
+    wild: inferred.wild,
     digits: fitted.digits,
     condition: fitted.condition,
     converged: fitted.converged,
@@ -69,17 +70,17 @@ export function fitResultOf(known: {
   };
 }
 
-/** What judges known variances: nothing in them was estimated, so that their sum of squares has a distribution of its own. */
+/** What judges known variances: nothing in them was estimated, so that their sum of squares has a distribution of its own. Null where Omega has no inverse. */
 function chiSquareOf(fitted: Fitted): FitResult['chiSquare'] {
-  if (fitted.estimatedParameters > 0) return null;
+  if (fitted.estimatedParameters > 0 || !factored(fitted.omegaShape).ok) return null;
   const statistic = sumOfSquares(underStructure(fitted).whitened);
   const freedom = fitted.residualFreedom;
   return { statistic, freedom, p: freedom > 0 ? chiSquareUpper(statistic, freedom) : null };
 }
 
 function biasOf(fitted: Fitted): number | null {
-  const { structure, estimate } = fitted;
+  const { structure, estimate, fixedPoint } = fitted;
   const estimated = structure.parameters[structure.betweenAt]?.fixed === null;
-  if (estimate.method !== 'full' || !estimated || structure.scaleAt >= 0) return null;
+  if (fixedPoint || estimate.method !== 'full' || !estimated || structure.scaleAt >= 0) return null;
   return tau2BiasOf(underStructure(fitted));
 }

@@ -1,24 +1,21 @@
-import { throughDiagonal } from '../algebra/through-diagonal';
-import { underStructure } from '../estimate/fit';
-import { errorOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
 import { done, type Outcome, refuse, refuseAll } from '../protocol/outcome';
 import type { Inference, Plan } from '../protocol/plan';
 import type { Coefficient, FitResult, Reference } from '../protocol/result';
+import type { Hooks } from '../protocol/source';
 import type { Cells } from '../table/cells';
+import { checkClusters } from './check-clusters';
+import type { Claim, Joint } from './claim';
+import { clusteredClaim, spreadingOf } from './clustered';
+import { clustersBy } from './clusters';
 import { coefficientsOf } from './coefficients';
-import { knappHartungFactor } from './knapp-hartung';
-import { numberOrNull, standardNormal, studentOn } from './reference';
-import { checkLeverage, robustSpread } from './robust';
-import { errorFreedomsOf, freedomRange, satterthwaiteFreedom } from './satterthwaite';
-
-/** A variance below this, the smallest normal double, has lost its digits: it is undefined, and not 0. */
-const LEAST_VARIANCE = 2.2250738585072014e-308;
-
-interface Spread {
-  readonly spread: Float64Array | null;
-  readonly factor: number | null;
-}
+import { coordinatesOf, unitRow } from './coordinates';
+import { undefinedJoint } from './joint';
+import { kenwardRogerClaim } from './kenward-roger';
+import { knappHartungClaim, modelClaim, robustClaim } from './model-claims';
+import { checkLeverage } from './robust';
+import { errorFreedomOf } from './satterthwaite';
+import { wildClaim } from './wild-claim';
 
 /** What is claimed about the coefficients of a fit, under the inference that the plan asks for. */
 export interface Inferred {
@@ -27,20 +24,17 @@ export interface Inferred {
   readonly covariance: (number | null)[][];
   /** In coefficient order. */
   readonly references: readonly (Reference | null)[];
-  /** Standard error of a combination of coefficients, from its k multipliers, by its own pulls: the root of x'Vx without the cancellation. */
-  readonly errorOf: (multipliers: ArrayLike<number>) => number | null;
+  /** Standard error of a combination of coefficients, from its k multipliers, without the cancellation of x'Vx. */
+  readonly errorOf: Claim['errorOf'];
   /** Reference of a combination of coefficients, from its k multipliers. */
-  readonly referenceOf: (multipliers: ArrayLike<number>) => Reference | null;
+  readonly referenceOf: Claim['referenceOf'];
+  /** Whether the coefficients at these places are all 0; each counts once. */
+  readonly jointOf: (columns: readonly number[]) => Joint;
+  /** The p value of a combination against a value where none of a distribution's is meant; null otherwise. */
+  readonly drawnP: ((multipliers: ArrayLike<number>, against: number) => number | null) | null;
   readonly knappHartungQ: number | null;
   readonly errorFreedom: FitResult['errorFreedom'];
-}
-
-const later: readonly Inference['kind'][] = ['clustered', 'wild', 'kenward-roger'];
-
-/** Refuses the kinds of inference that this version does not hold. */
-function checkInference(plan: Pick<Plan, 'inference'>): Outcome<null> {
-  const { kind } = plan.inference;
-  return later.includes(kind) ? refuse('not-available', { what: kind }, '/inference/kind') : done(null);
+  readonly wild: FitResult['wild'];
 }
 
 /**
@@ -48,106 +42,105 @@ function checkInference(plan: Pick<Plan, 'inference'>): Outcome<null> {
  *
  *     model           C Omega C'                     normal where every variance is known, t with G - k otherwise
  *     knapp-hartung   q C Omega C'                   t with G - k
+ *     kenward-roger   adjusted for the parameters    t with a freedom of its own
  *     robust          HC0 to HC4, whitened           t with G - k
+ *     clustered       CR0 to CR3, one or two ways    t with B - 1, Satterthwaite's freedom under CR2
+ *     wild            CR0                            p by bootstrap, no interval
  *
- * Given errors that carry a freedom are never referred to the normal: t with Satterthwaite's freedom, coefficient by coefficient.
+ * Errors that carry a freedom are never referred to the normal: given ones by Satterthwaite's, coefficient by coefficient, a matrix by its own.
  * With as many cells as coefficients what rests on residuals is null.
- * Refuses the kinds of later versions (`not-available`) and a cell of leverage 1 under HC2 to HC4 (`leverage-one`).
+ * Refuses a cell of leverage 1 under HC2 to HC4 (`leverage-one`), fewer than two clusters (`too-few-clusters`), a cluster that alone decides a
+ * coefficient under CR3 (`cluster-decides`), and a bootstrap that was stopped (`cancelled`).
+ *
+ * draws: false leaves the bootstrap out, its p values null, where a fit is only looked at for its errors.
  *
  * Example: `inferenceOf({ fitted, cells, plan })` with the plan of `fitted`; for a rival, a plan that holds the rival's variance.
- * Source: Knapp & Hartung 2003; White 1980; MacKinnon & White 1985; Satterthwaite 1946.
  */
 export function inferenceOf(known: {
   readonly fitted: Fitted;
   readonly cells: Cells;
   readonly plan: Plan;
+  readonly draws?: boolean;
+  readonly hooks?: Hooks;
 }): Outcome<Inferred> {
   const { fitted, cells, plan } = known;
-  const available = checkInference(plan);
-  if (!available.ok) return available;
   const { leverages, residualFreedom, design } = fitted;
   const pinned = checkLeverage({ plan, leverages, residualFreedom, labels: cells.labels });
   if (pinned.length > 0) return refuseAll(pinned);
+  const few = checkClusters({ plan, cells, coordinates: () => coordinatesOf(fitted), residualFreedom });
+  if (few.length > 0) return refuseAll(few);
 
-  const factor = factorOf(fitted, plan.inference);
-  const freedoms = errorFreedomsOf(plan, cells);
-  const spread = spreadOf(fitted, plan.inference, factor);
-  const covariance = covarianceOf(fitted, plan.inference, { spread, factor });
-  const referenceOf = referencesOf(fitted, plan.inference, freedoms);
-  const references = design.names.map((_, j) => referenceOf(design.names.map((_, l) => (l === j ? 1 : 0))));
-  const { level } = plan.inference;
-  return done({
-    coefficients: coefficientsOf({
-      names: design.names,
-      estimates: fitted.coefficients,
-      errors: errorsFor(fitted, plan.inference, { spread, factor }),
-      references,
-      level,
-    }),
-    covariance,
+  const { claim, factor } = claimOf(known);
+  if (known.hooks?.cancelled()) return refuse('cancelled', {});
+  const k = design.names.length;
+  const references = design.names.map((_, j) => claim.referenceOf(unitRow(k, j)));
+  const coefficients = coefficientsOf({
+    names: design.names,
+    estimates: fitted.coefficients,
+    errors: claim.errors,
     references,
-    referenceOf,
-    errorOf: (multipliers) =>
-      spread === null ? null : numberOrNull(errorOf(pullsOf(fitted.pulls, multipliers), spread)),
+    level: plan.inference.level,
+  });
+  const drawn = claim.drawn;
+  return done({
+    coefficients: drawn
+      ? coefficients.map((one) => ({ ...one, p: drawn.wild.find(({ term }) => term === one.term)?.p ?? null }))
+      : coefficients,
+    covariance: claim.covariance,
+    references,
+    errorOf: claim.errorOf,
+    referenceOf: claim.referenceOf,
+    jointOf: (columns) => claim.jointOf([...new Set(columns)]),
+    drawnP: drawn?.pOf ?? null,
     knappHartungQ: factor,
-    errorFreedom: freedomRange(freedoms),
+    errorFreedom: errorFreedomOf(plan, cells),
+    wild: drawn && [...drawn.wild],
   });
 }
 
-function factorOf(fitted: Fitted, inference: Inference): number | null {
-  return inference.kind === 'knapp-hartung' ? knappHartungFactor(underStructure(fitted), inference.floor) : null;
+interface Claimed {
+  readonly claim: Claim;
+  readonly factor: number | null;
 }
 
-/** V = C diag(spread) C'; null where it rests on residuals and none is free. */
-function spreadOf(fitted: Fitted, inference: Inference, factor: number | null): Float64Array | null {
-  if (inference.kind === 'robust') return robustSpread(fitted, inference.correction);
-  if (inference.kind === 'knapp-hartung' && factor === null) return null;
-  return fitted.variances.map((v) => v * (factor ?? 1));
-}
-
-function covarianceOf(fitted: Fitted, inference: Inference, known: Spread): (number | null)[][] {
-  const { spread, factor } = known;
-  if (spread === null) return fitted.pulls.map(() => fitted.pulls.map(() => null));
-  if (inference.kind === 'robust')
-    return throughDiagonal(fitted.pulls, spread).map((row) => Array.from(row, numberOrNull));
-  return fitted.covariance.map((row, i) =>
-    Array.from(row, (value, j) => {
-      const vanished = i === j && Math.abs(value) < LEAST_VARIANCE && fitted.scale !== 0;
-      return vanished ? null : numberOrNull(value * (factor ?? 1));
-    }),
-  );
-}
-
-function errorsFor(fitted: Fitted, inference: Inference, { spread, factor }: Spread): (number | null)[] {
-  if (spread === null) return fitted.pulls.map(() => null);
-  if (inference.kind === 'robust') return fitted.pulls.map((pull) => numberOrNull(errorOf(pull, spread)));
-  return Array.from(fitted.errors, (error) => numberOrNull(error * Math.sqrt(factor ?? 1)));
-}
-
-function referencesOf(
-  fitted: Fitted,
-  inference: Inference,
-  freedoms: Float64Array | null,
-): (multipliers: ArrayLike<number>) => Reference | null {
-  const onResiduals = studentOn(fitted.residualFreedom);
-  if (inference.kind !== 'model' || fitted.estimatedParameters > 0) return () => onResiduals;
-  if (freedoms === null) return () => standardNormal;
-  const { pulls, variances, structure } = fitted;
-  const scale = structure.scaleAt < 0 ? 1 : (fitted.theta[structure.scaleAt] as number);
-  const estimated = structure.sampling.map((a) => a * scale);
-  return (multipliers) => {
-    const combined = pullsOf(pulls, multipliers);
-    return studentOn(satterthwaiteFreedom({ pulls: combined, variances, estimated, freedoms }));
-  };
-}
-
-/** Pulls of a combination of coefficients on the cells: sum of multipliers times the rows of C. */
-function pullsOf(pulls: readonly Float64Array[], multipliers: ArrayLike<number>): Float64Array {
-  const combined = new Float64Array(pulls[0]?.length ?? 0);
-  for (const [j, row] of pulls.entries()) {
-    const share = multipliers[j] as number;
-    if (share === 0) continue;
-    for (let g = 0; g < row.length; g++) combined[g] = (combined[g] as number) + share * (row[g] as number);
+function claimOf(known: Parameters<typeof inferenceOf>[0]): Claimed {
+  const { fitted, cells, plan, hooks, draws = true } = known;
+  const { inference } = plan;
+  const plain = (claim: Claim): Claimed => ({ claim, factor: null });
+  switch (inference.kind) {
+    case 'model':
+      return plain(modelClaim(fitted, plan, cells));
+    case 'knapp-hartung':
+      return knappHartungClaim(fitted, inference.floor);
+    case 'robust':
+      return plain(robustClaim(fitted, inference.correction));
+    case 'kenward-roger':
+      return plain(kenwardRogerClaim(fitted));
+    case 'clustered':
+      return plain(clusteredOf(fitted, cells, inference));
+    case 'wild':
+      return plain(
+        fitted.residualFreedom > 0 ? wildClaim({ fitted, cells, inference, draws, hooks }) : nothing(fitted),
+      );
   }
-  return combined;
+}
+
+function clusteredOf(fitted: Fitted, cells: Cells, inference: Extract<Inference, { kind: 'clustered' }>): Claim {
+  const { correction, by, alsoBy } = inference;
+  const groupings = [by, ...(alsoBy ? [alsoBy] : [])].map((columns) => clustersBy(columns, cells));
+  const coordinates = coordinatesOf(fitted);
+  const spreading = fitted.residualFreedom > 0 ? spreadingOf({ coordinates, groupings, correction }) : null;
+  return spreading ? clusteredClaim({ coordinates, spreading, estimates: fitted.coefficients }) : nothing(fitted);
+}
+
+/** No residual is free: nothing that rests on residuals is defined. */
+function nothing({ design }: Fitted): Claim {
+  return {
+    covariance: design.names.map(() => design.names.map(() => null)),
+    errors: design.names.map(() => null),
+    errorOf: () => null,
+    referenceOf: () => null,
+    jointOf: (columns) => undefinedJoint(columns.length),
+    drawn: null,
+  };
 }

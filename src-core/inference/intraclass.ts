@@ -1,5 +1,6 @@
 import { heightAt } from '../estimate/likelihood';
-import { joinParts, type Structure } from '../model/structure';
+import type { Structure } from '../model/structure';
+import { joinParts } from '../model/structure-join';
 import type { Interval } from '../protocol/result';
 import { isRestricted, type Likelihoods, ownLikelihood } from './likelihoods';
 import { profileInterval } from './profile';

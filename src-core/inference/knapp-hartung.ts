@@ -1,4 +1,5 @@
 import type { Fitted } from '../estimate/fitted';
+import { sumOfSquares } from '../numbers/sums';
 import { numberOrNull } from './reference';
 
 /**
@@ -14,13 +15,8 @@ import { numberOrNull } from './reference';
  * Source: Knapp & Hartung 2003; the floor: Röver, Knapp & Friede 2015.
  */
 export function knappHartungFactor(underStructure: Fitted, floor: boolean): number | null {
-  const { residuals, variances, residualFreedom } = underStructure;
+  const { whitened, scale, residualFreedom } = underStructure;
   if (residualFreedom <= 0) return null;
-  let sum = 0;
-  for (let g = 0; g < residuals.length; g++) {
-    const r = residuals[g] as number;
-    sum += (r * r) / (variances[g] as number);
-  }
-  const q = numberOrNull(sum / residualFreedom);
+  const q = numberOrNull(sumOfSquares(whitened) / (scale ?? 1) / residualFreedom);
   return q !== null && floor ? Math.max(1, q) : q;
 }

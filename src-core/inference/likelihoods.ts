@@ -1,7 +1,8 @@
+import { factored } from '../algebra/factored';
 import { underStructure } from '../estimate/fit';
 import type { Fitted } from '../estimate/fitted';
 import { likelihoodAt } from '../estimate/likelihood';
-import { type LikelihoodRows, likelihoodRows } from '../estimate/likelihood-rows';
+import { heldRows, type LikelihoodRows, likelihoodRows } from '../estimate/likelihood-rows';
 import { sumOfSquares } from '../numbers/sums';
 import { numberOrNull } from './reference';
 
@@ -21,13 +22,15 @@ export interface Likelihoods {
  *     l_R = -1/2 [ (G-k) ln 2pi + ln det Omega + ln det(X' Omega^-1 X) + r' Omega^-1 r ],            a common scale at r'Wr / (G - k)
  *
  * r: generalised least squares under Omega, whatever the target of the plan is: both judge the structure, not the weights of the estimator.
- * Null where a common scale has no residuals to go by.
+ * Null where a common scale has no residuals to go by, and where Omega cannot be inverted.
  *
  * Example: ten cells of the physics data under 1/s^2 and a free scale: -37.834536 and -31.016011.
  * Source: Patterson & Thompson 1971; Harville 1977.
  */
 export function likelihoodsOf(fitted: Fitted): Likelihoods {
-  const { response, design, structure } = fitted;
+  const { response, design, structure, residuals } = fitted;
+  // A matrix of few degrees of freedom has no inverse, and so no likelihood.
+  if (!factored(fitted.omegaShape).ok) return { fitted, rows: heldRows(residuals), full: null, restricted: null };
   const rows = likelihoodRows({ response, design, structure });
   const at = (restricted: boolean): number | null => {
     const theta = scaledFor(fitted, rows, restricted);
@@ -46,6 +49,19 @@ function scaledFor(fitted: Fitted, rows: LikelihoodRows, restricted: boolean): F
   const scaled = theta.slice();
   scaled[structure.scaleAt] = sumOfSquares(underStructure(fitted).whitened) / counted;
   return scaled;
+}
+
+/**
+ * The log-likelihoods that a result tells of a fit. Where variances were iterated to fitted means, that of the counts alone: what is maximised beside
+ * it holds those variances, and is no likelihood of the data.
+ */
+export function toldLikelihoods({ fitted, full, restricted }: Likelihoods): {
+  readonly logLikelihood: number | null;
+  readonly restrictedLogLikelihood: number | null;
+} {
+  const { fixedPoint } = fitted;
+  if (fixedPoint) return { logLikelihood: fixedPoint.logLikelihood, restrictedLogLikelihood: null };
+  return { logLikelihood: full, restrictedLogLikelihood: restricted };
 }
 
 /** True where the method's own likelihood is the restricted one. */

@@ -3,18 +3,19 @@ import type { KnownTerm } from '../model/known-terms';
 import { rowOf } from '../model/row';
 import type { Plan, Question, Share, Where } from '../protocol/plan';
 import type { Answer, QuestionResult } from '../protocol/result';
+import type { Cells } from '../table/cells';
 import { combinationOf, testedAgainst } from './combination';
 import { holmAdjusted } from './holm';
 import type { Inferred } from './inferred';
-import { jointAnswer } from './joint';
 import { columnNamed, columnsNamed } from './named-coefficients';
-import { betweenVariance, newSamplingVariance } from './new-cell';
+import { newCellVariance, newSamplingVariance } from './new-cell';
 
 interface Asked {
   readonly plan: Plan;
   readonly fitted: Fitted;
   readonly inferred: Inferred;
   readonly known: readonly KnownTerm[];
+  readonly cells: Cells;
 }
 
 /**
@@ -22,14 +23,14 @@ interface Asked {
  *
  *     joint         F (or chi-square) that all named coefficients are 0
  *     combination   sum of multiples of coefficients, tested against `equals`
- *     expect        the fitted mean at x; the true value of a new cell there (+ tau^2); its observed mean (+ sampling variance)
+ *     expect        the fitted mean at x; the true value of a new cell there, in new groups (+ tau^2 + every omega^2); its observed mean (+ sampling variance)
  *     average       fitted mean over a standard population; with `minus` a contrast of two, tested against 0
  *
  * Each under the reference that the plan's inference gives to that combination's own pulls. Holm's adjustment runs within a family, over
  * the questions that have a p value; it is null outside one.
  * Names are taken as checked (`checkQuestions`): an unknown one is a bug and throws.
  *
- * Example: `questionsOf({ plan, fitted, inferred, known })` after `inferenceOf`.
+ * Example: `questionsOf({ plan, fitted, inferred, known, cells })` after `inferenceOf`.
  */
 export function questionsOf(asked: Asked): QuestionResult[] {
   const answers = asked.plan.questions.map((question) => answerTo(question, asked));
@@ -51,20 +52,20 @@ function answerTo(question: Question, asked: Asked): Answer {
         const found = columnsNamed(name, { design, plan });
         return found.length > 0 ? found : mustBe(-1, name);
       });
-      return jointAnswer(columns, estimates, inferred);
+      return inferred.jointOf(columns);
     }
     case 'combination': {
       const multipliers = new Float64Array(design.names.length);
       for (const [name, multiple] of Object.entries(question.of))
         multipliers[mustBe(columnNamed(name, { design }), name)] = multiple;
-      return testedAgainst(question.equals, combinationOf({ multipliers, estimates, inferred, level }));
+      return testedAgainst(question.equals, { multipliers, estimates, inferred, level });
     }
     case 'average': {
       const multipliers = averageRow(question.of, asked);
       if (question.minus === null) return { ...combinationOf({ multipliers, estimates, inferred, level }), p: null };
       const less = averageRow(question.minus, asked);
       const contrast = multipliers.map((x, j) => x - (less[j] as number));
-      return testedAgainst(0, combinationOf({ multipliers: contrast, estimates, inferred, level }));
+      return testedAgainst(0, { multipliers: contrast, estimates, inferred, level });
     }
     case 'expect':
       return expectation(question, asked);
@@ -81,9 +82,9 @@ function expectation(question: Extract<Question, { kind: 'expect' }>, asked: Ask
       level: plan.inference.level,
       added,
     });
-  const between = betweenVariance(fitted);
+  const between = newCellVariance(fitted);
   const mean = ofCell(0);
-  const sampling = newSamplingVariance({ plan, fitted, question, expected: mean.estimate });
+  const sampling = newSamplingVariance({ plan, fitted, question, expected: mean.estimate, cells: asked.cells });
   return {
     fitted: mean,
     newCellTrue: ofCell(between),

@@ -58,7 +58,7 @@ export function estimatedOf(known: {
   const se = numberOrNull(known.se);
   if (se === null || reference === null) return { estimate, low: null, high: null, se, reference };
   const reach = reachOf(reference, level) * se;
-  return { estimate, low: estimate - reach, high: estimate + reach, se, reference };
+  return { estimate, low: numberOrNull(estimate - reach), high: numberOrNull(estimate + reach), se, reference };
 }
 
 /** Ratio to the error and its p value; both null where the error is 0 or not there. */

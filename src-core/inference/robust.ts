@@ -1,16 +1,15 @@
-import { errorOf } from '../estimate/fit-at';
 import type { Fitted } from '../estimate/fitted';
 import { pow } from '../numbers/elementary';
 import { LEVERAGE_OF_ONE } from '../numbers/tolerances';
 import { problem } from '../protocol/outcome';
 import type { Plan, RobustCorrection } from '../protocol/plan';
 import type { Problem } from '../protocol/problems';
-import type { RobustBeside } from '../protocol/result';
-import { numberOrNull } from './reference';
 
 /** Cells, by index, that alone determine a coefficient: their residual is 0 whatever they hold. */
 export function cellsOfLeverageOne(leverages: Float64Array): number[] {
-  return [...leverages.keys()].filter((g) => (leverages[g] as number) > 1 - LEVERAGE_OF_ONE);
+  const found: number[] = [];
+  for (let g = 0; g < leverages.length; g++) if ((leverages[g] as number) > 1 - LEVERAGE_OF_ONE) found.push(g);
+  return found;
 }
 
 /**
@@ -52,7 +51,12 @@ export function robustSpread(fitted: Fitted, correction: RobustCorrection): Floa
   const divides = correction !== 'HC0' && correction !== 'HC1';
   if (divides && cellsOfLeverageOne(leverages).length > 0) return null;
   const counts = { cells: residuals.length, coefficients: pulls.length };
-  return residuals.map((r, g) => r * r * correctionOf(correction, leverages[g] as number, counts));
+  const spread = new Float64Array(residuals.length);
+  for (let g = 0; g < spread.length; g++) {
+    const r = residuals[g] as number;
+    spread[g] = r * r * correctionOf(correction, leverages[g] as number, counts);
+  }
+  return spread;
 }
 
 function correctionOf(
@@ -73,22 +77,4 @@ function correctionOf(
     case 'HC4':
       return pow(left, -Math.min(4, (cells * leverage) / coefficients));
   }
-}
-
-/**
- * HC3 errors beside the model-based ones, with their ratio.
- *
- * Both null where a cell has leverage 1 or no residual is free; the ratio alone where the model-based error is 0 or undefined.
- *
- * Example: an error of 9.0 by HC3 where the model says 6.0 gives the ratio 1.5.
- * Source: MacKinnon & White 1985; Long & Ervin 2000.
- */
-export function robustBeside(fitted: Fitted): RobustBeside[] {
-  const spread = robustSpread(fitted, 'HC3');
-  return fitted.design.names.map((term, j) => {
-    const se = spread === null ? null : numberOrNull(errorOf(fitted.pulls[j] as Float64Array, spread));
-    if (se === null) return { term, se: null, ratioToModel: null };
-    const model = fitted.errors[j] as number;
-    return { term, se, ratioToModel: model > 0 ? numberOrNull(se / model) : null };
-  });
 }

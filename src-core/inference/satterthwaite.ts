@@ -2,6 +2,7 @@ import { median, sorted } from '../numbers/order';
 import type { Plan } from '../protocol/plan';
 import type { FitResult } from '../protocol/result';
 import type { Cells } from '../table/cells';
+import { freedomOf } from '../table/matrix';
 
 /**
  * The freedom behind each cell's given error; null where errors are taken as exact or the plan gives none.
@@ -20,8 +21,28 @@ export function errorFreedomsOf(
   return cells.numbers(given.freedom.column).values.high;
 }
 
-/** How many degrees of freedom stand behind the given errors: the middle and both ends. */
-export function freedomRange(freedoms: Float64Array | null): FitResult['errorFreedom'] {
+/**
+ * The freedom of a given matrix as a whole; null where the plan has none, or takes it as exact. Of a column's freedoms, one a cell, the smallest
+ * holds: they describe one matrix.
+ */
+export function matrixFreedomOf(plan: Pick<Plan, 'variance'>, cells: Pick<Cells, 'count' | 'numbers'>): number | null {
+  const matrix = plan.variance.parts.find((part) => part.kind === 'matrix');
+  return matrix ? freedomOf(matrix.freedom, (column) => Array.from(cells.numbers(column).values.high)) : null;
+}
+
+function freedomsOfMatrix(plan: Pick<Plan, 'variance'>, cells: Pick<Cells, 'count' | 'numbers'>): Float64Array | null {
+  const matrix = plan.variance.parts.find((part) => part.kind === 'matrix');
+  if (matrix === undefined || matrix.freedom === null) return null;
+  if (typeof matrix.freedom === 'number') return new Float64Array(cells.count).fill(matrix.freedom);
+  return cells.numbers(matrix.freedom.column).values.high;
+}
+
+/** How many degrees of freedom stand behind the given errors or matrix: the middle and both ends; null where they are taken as exact. */
+export function errorFreedomOf(
+  plan: Pick<Plan, 'variance'>,
+  cells: Pick<Cells, 'count' | 'numbers'>,
+): FitResult['errorFreedom'] {
+  const freedoms = errorFreedomsOf(plan, cells) ?? freedomsOfMatrix(plan, cells);
   if (freedoms === null || freedoms.length === 0) return null;
   const rising = sorted(freedoms);
   return { median: median(rising), low: rising[0] as number, high: rising[rising.length - 1] as number };

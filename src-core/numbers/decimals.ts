@@ -85,7 +85,13 @@ export function powerOf(column: Decimals, exponent: number): Decimals {
 
 /** The values of some rows, in the order of the rows. Example: rows [2, 0] of 5, 6, 7 give 7, 5. */
 export function takeRows(column: Decimals, rows: ArrayLike<number>): Decimals {
-  return formed(rows.length, (place) => pairAt(column, rows[place] as number));
+  const count = rows.length;
+  const taken = { high: new Float64Array(count), low: new Float64Array(count) };
+  for (let place = 0; place < count; place++) {
+    taken.high[place] = column.high[rows[place] as number] as number;
+    taken.low[place] = column.low[rows[place] as number] as number;
+  }
+  return taken;
 }
 
 /** Squares and multiplies; 0 to the power 0 is 1. */

@@ -2,6 +2,11 @@ export { chiSquareLower, chiSquareQuantile, chiSquareUpper, chiSquareUpperQuanti
 export { fLower, fQuantile, fUpper, fUpperQuantile } from './fisher';
 export { noncentralChiSquareUpper, noncentralFUpper, noncentralTUpper } from './noncentral';
 export {
+  noncentralChiSquareUpperQuantile,
+  noncentralFUpperQuantile,
+  noncentralTUpperQuantile,
+} from './noncentral-quantiles';
+export {
   normalDensity,
   normalLower,
   normalQuantile,

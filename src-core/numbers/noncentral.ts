@@ -3,7 +3,7 @@ import { fromNumber, type Pair, twoProduct } from './double-double';
 import { pow } from './elementary';
 import { betaPoint } from './fisher';
 import { gammaTails, poissonTerm } from './gamma-tails';
-import { normalUpper } from './normal';
+import { normalDensity, normalUpper } from './normal';
 import { checkFreedom, checkPoint } from './quantile-search';
 import { sizePoint } from './student';
 import { FREEDOM_WITHOUT_END, POWER_TAIL_FROM } from './tolerances';
@@ -79,7 +79,7 @@ export function noncentralFUpper(x: number, freedom1: number, freedom2: number, 
  *     half the sum of two mixtures of beta tails, at whole and at half steps
  *
  * freedom: above 0, infinity for the normal; noncentrality: finite, of either sign; anything else throws. Relative where t and the noncentrality
- * have one sign, else absolute error about 1e-14.
+ * have one sign, else absolute error about 1e-14; with a noncentrality above 10,000 and a freedom hundreds of times t^2, about 1e-9.
  *
  * Example: noncentralTUpper(2, 10, 0) = tUpper(2, 10).
  * Source: Johnson, Kotz & Balakrishnan 1995, chapter 31.
@@ -94,6 +94,8 @@ export function noncentralTUpper(t: number, freedom: number, noncentrality: numb
     if (t === Infinity) return 0;
     return noncentralTUpper(POWER_TAIL_FROM, freedom, noncentrality) * pow(t / POWER_TAIL_FROM, -freedom);
   }
+  if (noncentrality < -NEVER) return 0;
+  if (noncentrality > FAR) return farTUpper(t, freedom, noncentrality);
   const square = twoProduct(noncentrality, noncentrality);
   const mean: Pair = [square[0] / 2, square[1] / 2];
   const ladder = betaLadder(sizePoint(t, freedom));
@@ -101,6 +103,40 @@ export function noncentralTUpper(t: number, freedom: number, noncentrality: numb
   if (noncentrality === 0) return size / 2;
   const sided = mixture({ mean, shift: 0.5, ...ladder });
   return noncentrality > 0 ? (size + sided) / 2 : Math.max(0, (size - sided) / 2);
+}
+
+/** From this noncentrality on the normal is integrated out: a mixture would take steps without end. */
+const FAR = 1e4;
+/** A normal this far out never occurs to any double. */
+const NEVER = 38.6;
+const EIGHTH = 0.125;
+/** A term below this share of the sum ends it. */
+const LOST = 1e-20;
+/** Where the root of chi-square over freedom spreads by less than this beside the normal, it is taken as normal itself. */
+const NARROW = 0.05;
+
+/**
+ * P(T > t) far from 0: the integral of phi(z) P(chi-square < freedom ((z + noncentrality) / t)^2) by the trapezoidal rule, exact to rounding for
+ * what is smooth beside the normal density.
+ */
+function farTUpper(t: number, freedom: number, noncentrality: number): number {
+  const spread = t / Math.sqrt(2 * freedom);
+  if (!(t > 0)) return 1;
+  if (spread < NARROW) return normalUpper((t - t / (4 * freedom) - noncentrality) / Math.sqrt(1 + spread * spread));
+  const step = Math.min(EIGHTH, spread / 4);
+  const termAt = (z: number): number => {
+    const ratio = (z + noncentrality) / t;
+    const half = (freedom / 2) * ratio * ratio;
+    return normalDensity(z) * (half < Infinity ? gammaTails(freedom / 2, fromNumber(half)).lower : 1);
+  };
+  let total = termAt(0);
+  for (const way of [step, -step])
+    for (let z = way; Math.abs(z) < NEVER; z += way) {
+      const term = termAt(z);
+      total += term;
+      if (term <= LOST * total) break;
+    }
+  return Math.min(1, total * step);
 }
 
 function betaLadder(point: BetaPoint): Ladder {

@@ -66,7 +66,7 @@ interface Point {
 function interpolated(before: Point, best: Point, opposite: Point): number {
   const half = (opposite.x - best.x) / 2;
   const ratio = best.y / before.y;
-  if (before.x === opposite.x) return (-2 * half * ratio) / (ratio - 1);
+  if (before.x === opposite.x) return (2 * half * ratio) / (ratio - 1);
   const q = before.y / opposite.y;
   const r = best.y / opposite.y;
   const above = ratio * (2 * half * q * (q - r) - (best.x - before.x) * (r - 1));

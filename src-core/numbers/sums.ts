@@ -82,6 +82,33 @@ export function lengthOf(values: ArrayLike<number>): number {
   return unit * Math.sqrt(sumOfSquares(Array.from(values, (value) => value / unit)));
 }
 
+/**
+ * The length of a list through a diagonal, safe from overflow and underflow.
+ *
+ *     root of sum a_g^2 v_g
+ *
+ * v: 0 or above; a NaN makes it NaN. All terms are of one sign, so that what additions lose is carried along and rounded once.
+ *
+ * Example: lengthThrough([3, 4], [1, 4]) = 8.54400374531753.
+ */
+export function lengthThrough(a: ArrayLike<number>, v: ArrayLike<number>): number {
+  let largest = 0;
+  let total = 0;
+  let rest = 0;
+  for (let g = 0; g < a.length; g++) {
+    const part = (a[g] as number) * Math.sqrt(v[g] as number);
+    const square = part * part;
+    const next = total + square;
+    const gained = next - total;
+    rest += total - (next - gained) + (square - gained);
+    total = next;
+    const size = Math.abs(part);
+    if (!(size <= largest)) largest = Number.isNaN(largest) ? largest : size;
+  }
+  if (largest > 1e-140 && largest < 1e140) return Math.sqrt(total + rest);
+  return lengthOf(Float64Array.from(a, (value, g) => value * Math.sqrt(v[g] as number)));
+}
+
 /** The sum in double-double, of doubles or (with lows) of double-doubles. Example: sumPair([1, 1e-20]) = [1, 1e-20]. */
 export function sumPair(highs: ArrayLike<number>, lows?: ArrayLike<number>): Pair {
   let total: Pair = ZERO;

@@ -20,3 +20,6 @@ export const FREEDOM_WITHOUT_END = 1e18;
 
 /** A tail of Student's or Fisher's distribution beyond this point is a power of the point to every digit. */
 export const POWER_TAIL_FROM = 1e120;
+
+/** What is left of a diagonal entry in a Cholesky factor counts as nothing below this share of it. */
+export const NOT_DEFINITE = 1e-14;

@@ -1,6 +1,7 @@
+import { isOfCounts } from './linked';
 import { problem } from './outcome';
-import { onlyScaleUnknown, unknownParameters } from './parameter-names';
-import type { Estimate, Inference, Plan, Roles, Variance } from './plan';
+import { isSampling, type NamedParameter, onlyScaleUnknown, unknownParameters } from './parameter-names';
+import type { Estimate, Inference, Part, Plan, Roles, Variance } from './plan';
 import type { Problem } from './problems';
 
 /** The sections of a plan in their normal form; null where a section has faults of its own, so that nothing can be said about it. */
@@ -12,11 +13,15 @@ export function checkMethod(plan: Sections): Problem[] {
   return [
     ...(outcomeScale !== null && roles !== null ? checkScale(outcomeScale, roles) : []),
     ...checkAddedHalf(plan),
+    ...checkLink(plan),
     ...(variance !== null && estimate !== null ? checkEstimate(estimate, variance, outcomeScale) : []),
     ...(variance !== null && inference !== null ? checkInference(inference, variance) : []),
     ...(inference !== null && estimate !== null ? checkRestricted(inference, estimate) : []),
     ...(inference !== null && target !== null && target !== 'structure' && isOwnWeights(inference)
       ? exclude('target', 'inference')
+      : []),
+    ...(inference?.kind === 'robust' && target !== null && typeof target === 'object'
+      ? checkUncorrelated(target, '/inference/kind')
       : []),
   ];
 }
@@ -38,6 +43,18 @@ function checkAddedHalf({ addedHalf, outcomeScale, estimate }: Sections): Proble
   if (addedHalf === null || outcomeScale === null) return [];
   if (outcomeScale !== 'logit') return exclude('outcomeScale', 'addedHalf');
   return estimate?.method === 'full' ? exclude('addedHalf', 'estimate') : [];
+}
+
+/** Maximum likelihood of counts with a link has one part, uncorrelated, and its own weights. */
+function checkLink({ outcomeScale, variance, estimate, target }: Sections): Problem[] {
+  if (outcomeScale === null || outcomeScale === 'identity' || variance === null || estimate?.method !== 'full')
+    return [];
+  const { parts } = variance;
+  if (!isOfCounts({ variance })) return [];
+  const alone = parts.every((part) => isSampling(part) && !('correlation' in part && part.correlation !== null));
+  const noOther = outcomeScale === 'log' && parts.some(({ kind }) => kind === 'counts');
+  if (!alone) return noOther ? exclude('outcomeScale', 'variance') : exclude('variance', 'outcomeScale', 'estimate');
+  return target !== null && target !== 'structure' && target !== 'diagonal' ? exclude('target', 'estimate') : [];
 }
 
 /** Whether the method can settle what is unknown of the structure. */
@@ -79,24 +96,33 @@ function checkInference(inference: Inference, variance: Variance): Problem[] {
   return by === alsoBy ? pair('by', 'alsoBy') : [];
 }
 
-/** The first unknown parameter in which Omega is not linear. phi times rho of an exchangeable correlation is. */
+/**
+ * The first unknown parameter in which Omega is not linear; undefined where it is linear in all.
+ *
+ * phi times rho of an exchangeable correlation is a parameter in which it is. Classes that go together are not: between two of them stands the root of
+ * the product of their variances.
+ */
+export function curvedParameter(variance: Variance): NamedParameter | undefined {
+  return unknownParameters(variance).find(({ role, part }) => {
+    const correlation = 'correlation' in part ? part.correlation : null;
+    if (part.kind === 'per-class' && correlation !== null) return true;
+    return role === 'exponent' || role === 'log-linear' || (role === 'correlation' && correlation?.kind === 'serial');
+  });
+}
+
 function checkLinear(variance: Variance, at: string): Problem[] {
-  const curved = unknownParameters(variance).find(
-    ({ role, part }) =>
-      role === 'exponent' ||
-      role === 'log-linear' ||
-      (role === 'correlation' && 'correlation' in part && part.correlation?.kind === 'serial'),
-  );
+  const curved = curvedParameter(variance);
   return curved === undefined ? [] : [problem('not-linear', { part: curved.part.kind, parameter: curved.name }, at)];
 }
 
-/** The first part that correlates cells. */
+/** The first part that correlates cells; undefined where none does. */
+export function correlatingPart({ parts }: Variance): Part | undefined {
+  return parts.find((part) => part.kind === 'shared' || part.kind === 'matrix' || part.correlation !== null);
+}
+
 function checkUncorrelated(variance: Variance, at: string): Problem[] {
-  for (const part of variance.parts) {
-    const correlated = part.kind === 'shared' || part.kind === 'matrix' || part.correlation !== null;
-    if (!correlated) continue;
-    const by = part.kind === 'shared' ? part.by : part.kind === 'matrix' ? [] : (part.correlation?.by ?? []);
-    return [problem('correlated-cells', { kind: 'robust', part: part.kind, by }, at)];
-  }
-  return [];
+  const part = correlatingPart(variance);
+  if (part === undefined) return [];
+  const by = part.kind === 'shared' ? part.by : 'correlation' in part ? (part.correlation?.by ?? []) : [];
+  return [problem('correlated-cells', { kind: 'robust', part: part.kind, by }, at)];
 }

@@ -1,6 +1,8 @@
 import type { DraftPlan } from './draft';
+import { type AlsoChanged, type Edited, sameEstimate, suits } from './edit-structure';
+import { methodsFor } from './offered-parts';
 import type { DataPlan, Derive, Join, Limit, Omit, OutcomeScale, Plan, Read, Status } from './plan';
-import { defaultAddedHalf } from './plan-defaults';
+import { defaultAddedHalf, defaultEstimate } from './plan-defaults';
 import { stepsOf } from './pointer';
 
 type AnyPlan = Plan | DraftPlan;
@@ -108,10 +110,38 @@ export function withLimit<P extends AnyPlan>(plan: P, column: string, limit: Lim
   return withData(plan, { limits: limit === null ? limits : { ...limits, [column]: limit } });
 }
 
-/** A plan with its outcome on another scale; what is added to extreme shares belongs to the logit, and is settled anew. */
+/**
+ * A plan with its outcome on another scale.
+ *
+ * A method that was the structure's own on the old scale, or that the new one does not offer, gives way to its own on the new; an inference that the
+ * method does not carry goes back to the model's; what is added to extreme shares belongs to the logit, and is settled anew. All of it waits where
+ * no structure is stated yet.
+ */
 export function withScale<P extends AnyPlan>(plan: P, outcomeScale: OutcomeScale): P {
-  const addedHalf = plan.estimate === null ? null : defaultAddedHalf(outcomeScale, plan.estimate);
-  return { ...plan, outcomeScale, addedHalf };
+  const { variance, estimate, inference, target } = plan;
+  if (variance === null || estimate === null) return { ...plan, outcomeScale, addedHalf: null };
+  const own = sameEstimate(estimate, defaultEstimate(variance, plan.outcomeScale));
+  const kept = !own && methodsFor({ variance, outcomeScale }).includes(estimate.method);
+  const method = kept ? estimate : defaultEstimate(variance, outcomeScale);
+  return {
+    ...plan,
+    outcomeScale,
+    estimate: method,
+    addedHalf: defaultAddedHalf(outcomeScale, method),
+    inference: suits(inference, { variance, estimate: method, target })
+      ? inference
+      : { kind: 'model', level: inference.level },
+  };
+}
+
+/** A whole plan with its outcome on another scale, and what changed with it. */
+export function stateScale(before: Plan, outcomeScale: OutcomeScale): Edited {
+  const plan = withScale(before, outcomeScale);
+  const also: AlsoChanged[] = [
+    ...(sameEstimate(plan.estimate, before.estimate) ? [] : (['estimate'] as const)),
+    ...(plan.inference.kind === before.inference.kind ? [] : (['inference'] as const)),
+  ];
+  return { plan, also };
 }
 
 /** A plan with a unit stated for a column, or taken back where the text is empty. */

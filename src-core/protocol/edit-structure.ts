@@ -1,3 +1,4 @@
+import { correlatingPart, curvedParameter } from './check-method';
 import { isSamplingAndBetween, methodsFor, sameVariance, varianceOfRival } from './offered-parts';
 import { isSampling, means, namedParameters } from './parameter-names';
 import type { Estimate, Inference, Part, Plan, Rival, Roles, Target, Variance } from './plan';
@@ -22,12 +23,13 @@ export interface Edited {
  * States another variance structure: the one that stood is kept beside, unless it stands there already.
  *
  * The method goes back to the structure's own where the old one cannot settle it, or where it was the old structure's own; inference goes back
- * to the model's where it is not made for the new structure; set parameters that the new one does not have are let go.
+ * to the model's where it is not made for the new structure; set parameters that the new one does not have are let go. refused: the structure that
+ * stood could not be fitted; it is not kept beside, where it would refuse every fit to come.
  */
-export function stateVariance(plan: Plan, variance: Variance): Edited {
+export function stateVariance(plan: Plan, variance: Variance, { refused = false } = {}): Edited {
   const others = plan.beside.filter((rival) => !sameVariance(rival, variance));
   const old: Rival[] =
-    sameVariance(plan.variance, variance) || stands(others, plan.variance) ? [] : [asRival(plan.variance)];
+    refused || sameVariance(plan.variance, variance) || stands(others, plan.variance) ? [] : [asRival(plan.variance)];
   return settled(plan, { ...plan, variance, beside: [...old, ...others] });
 }
 
@@ -141,21 +143,18 @@ function withInferenceChecked(plan: Plan): Edited {
 /** Whether an inference is made for a plan's structure, method and target. */
 export function suits(inference: Inference, plan: Pick<Plan, 'variance' | 'estimate' | 'target'>): boolean {
   const { variance, estimate, target } = plan;
-  const correlated = variance.parts.some(
-    (part) => part.kind === 'shared' || part.kind === 'matrix' || part.correlation !== null,
-  );
   switch (inference.kind) {
     case 'knapp-hartung':
       return isSamplingAndBetween(variance.parts) && target === 'structure';
     case 'kenward-roger':
-      return estimate.method === 'restricted' && target === 'structure';
+      return estimate.method === 'restricted' && target === 'structure' && curvedParameter(variance) === undefined;
     case 'robust':
-      return !correlated;
+      return [variance, target].every((one) => typeof one === 'string' || correlatingPart(one) === undefined);
     default:
       return true;
   }
 }
 
-function sameEstimate(one: Estimate, other: Estimate): boolean {
+export function sameEstimate(one: Estimate, other: Estimate): boolean {
   return JSON.stringify(one) === JSON.stringify(other);
 }

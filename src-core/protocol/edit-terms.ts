@@ -34,8 +34,19 @@ function withTerms(plan: Plan, terms: Term[], value: ValueForQuestions): Edited 
   return mended({ ...plan, terms }, value);
 }
 
+/** What of a plan, or of a draft, asks about its terms. */
+type Asking = Pick<Plan, 'terms' | 'intercept' | 'questions' | 'matters'>;
+
+/** A plan, or a draft, whose terms became fewer: without what they no longer carry. */
+export function withFewerTerms<P extends Asking>(
+  plan: P,
+  terms: Term[],
+): { readonly plan: P; readonly also: readonly AlsoChanged[] } {
+  return mended({ ...plan, terms }, null);
+}
+
 /** Questions and smallest differences that the terms no longer carry are taken out; values that are lacking are filled in where one was stated. */
-function mended(plan: Plan, value: ValueForQuestions): Edited {
+function mended<P extends Asking>(plan: P, value: ValueForQuestions): { plan: P; also: readonly AlsoChanged[] } {
   const columns = columnsOfTerms(plan.terms);
   const filled = value === null ? plan.questions : plan.questions.map((one) => withValues(one, columns, value));
   const questions = filled.filter((one) => isCarried(one, plan) && !columns.some((column) => lacks(one, column)));
@@ -68,14 +79,14 @@ function withValues(question: Question, columns: readonly string[], value: numbe
   return { ...question, of: each(question.of), minus: question.minus === null ? null : each(question.minus) };
 }
 
-function isCarried(question: Question, plan: Plan): boolean {
+function isCarried(question: Question, plan: Asking): boolean {
   if (question.kind === 'joint') return question.terms.every((name) => isCoefficient(name, plan));
   if (question.kind === 'combination') return Object.keys(question.of).every((name) => isCoefficient(name, plan));
   return true;
 }
 
 /** Whether a name can be a coefficient's or a term's: the levels of a category are known from data alone, so that any is let through. */
-function isCoefficient(name: string, { terms, intercept }: Plan): boolean {
+function isCoefficient(name: string, { terms, intercept }: Asking): boolean {
   if (name === 'intercept') return intercept;
   return terms.some((term) => {
     if (termName(term) === name) return true;

@@ -25,6 +25,10 @@ export const whyNotCodes = [
   'absorbed',
   /** The structure without the part could not be fitted. */
   'no-convergence',
+  /** More than two variances at 0 together, a parameter that vanishes with its part, or another variance at 0: no mixture is known. */
+  'no-mixture',
+  /** The test needs independent cells: whitened residuals of correlated ones depend on the root chosen. */
+  'correlated',
 ] as const;
 
 export type WhyNot = (typeof whyNotCodes)[number];
@@ -38,6 +42,7 @@ export const noDepartureCodes = [
   /** Not found with power .8 however large the departure. */
   'out-of-reach',
   'structure',
+  'too-many-cells',
   'cancelled',
 ] as const;
 

@@ -1,48 +1,6 @@
+import { isOfCounts } from './linked';
 import { onlyScaleUnknown } from './parameter-names';
-import type { Correlation, Inference, Part, PartKind, Plan, Rival, Roles, Variance } from './plan';
-
-/**
- * What the contract holds and this version does not fit yet, by name: the one list of it. Controls offer all of the contract and say what is on
- * the list; the fit refuses it by the same names.
- */
-const later = {
-  parts: new Set<PartKind>(['matrix', 'log-linear', 'per-class', 'binomial', 'counts', 'shared']),
-  correlations: new Set<Correlation['kind']>(['exchangeable', 'serial']),
-  inferences: new Set<Inference['kind']>(['kenward-roger', 'clustered', 'wild']),
-  keys: new Set<LaterKey>(['limits', 'sizeWithin', 'withinSd', 'logit', 'disclosure']),
-} as const;
-
-/** What can be missing besides parts, correlations and inferences. */
-export type LaterKey = 'limits' | 'sizeWithin' | 'withinSd' | 'logit' | 'disclosure';
-
-/** Whether this version fits parts of a kind. */
-export function isOffered(kind: PartKind): boolean {
-  return !later.parts.has(kind);
-}
-
-/** Whether this version fits parts that are correlated in this way. */
-export function isOfferedCorrelation(kind: Correlation['kind']): boolean {
-  return !later.correlations.has(kind);
-}
-
-/** Whether this version does what a key of the plan asks for. */
-export function isOfferedKey(key: LaterKey): boolean {
-  return !later.keys.has(key);
-}
-
-/** What a structure holds that this version does not fit, by name: kinds of parts, kinds of correlation. */
-export function lackingIn({ parts }: Pick<Variance, 'parts'>): string[] {
-  return parts.flatMap((part) => {
-    if (!isOffered(part.kind)) return [part.kind];
-    if (!('correlation' in part) || part.correlation === null) return [];
-    return isOfferedCorrelation(part.correlation.kind) ? [] : [part.correlation.kind];
-  });
-}
-
-/** Whether this version has this kind of inference. */
-export function isOfferedInference(kind: Inference['kind']): boolean {
-  return !later.inferences.has(kind);
-}
+import type { Part, PartKind, Plan, Rival, Roles, Variance } from './plan';
 
 /** A rival's word as the structure that it stands for; a structure is itself. */
 export function varianceOfRival(rival: Rival): Variance {
@@ -67,8 +25,11 @@ export function roleLacking(kind: PartKind, roles: Roles): 'size' | 'error' | 'c
   switch (kind) {
     case 'per-size':
     case 'size-power':
-    case 'binomial':
       return roles.size === null ? 'size' : null;
+    case 'binomial': {
+      const proportion = roles.exposure === null && (roles.count !== null || roles.outcomeUnit !== 'number');
+      return proportion ? (roles.size === null ? 'size' : null) : 'count';
+    }
     case 'given':
       return roles.error === null ? 'error' : null;
     case 'counts':
@@ -86,10 +47,12 @@ export function methodsFor({
   const kinds = variance.parts.map(({ kind }) => kind);
   if (outcomeScale === 'log' && kinds.includes('counts')) return ['full'];
   const moments = isSamplingAndBetween(variance.parts);
+  // Maximum likelihood with a link has one part alone.
+  const full = outcomeScale === 'identity' || !isOfCounts({ variance }) || onlyScaleUnknown(variance);
   return [
     ...(onlyScaleUnknown(variance) ? (['least-squares'] as const) : []),
     'restricted',
-    'full',
+    ...(full ? (['full'] as const) : []),
     'two-step',
     ...(moments ? (['moments'] as const) : []),
   ];

@@ -102,7 +102,8 @@ export interface Troubles {
   'unknown-stratum': { readonly found: string; readonly nearest: string | null };
   // model: the terms and the structure on the used cells
   'fewer-cells-than-terms': { readonly cells: number; readonly coefficients: number };
-  'dependent-columns': { readonly coefficients: readonly string[] };
+  /** underWeights: the columns differ, but only in cells that weigh nothing beside the others. */
+  'dependent-columns': { readonly coefficients: readonly string[]; readonly underWeights?: boolean };
   'one-level': { readonly column: string; readonly level: string };
   'cluster-cuts-block': {
     readonly by: readonly string[];
@@ -110,12 +111,33 @@ export interface Troubles {
     readonly partBy: readonly string[];
     readonly group: Readonly<Record<string, string>>;
   };
+  'too-few-clusters': { readonly by: readonly string[]; readonly clusters: number };
+  /** A cluster that alone decides a combination of coefficients: the correction divides by 0 there. */
+  'cluster-decides': {
+    readonly by: readonly string[];
+    readonly group: Readonly<Record<string, string>>;
+    readonly correction: string;
+  };
+  /** More cells tied to each other than one dense factor is taken of. */
+  'block-too-large': { readonly cells: number; readonly most: number };
   'unknown-coefficient': { readonly found: string; readonly nearest: string | null };
   'leverage-one': { readonly labels: readonly string[]; readonly correction: string };
   'not-available': { readonly what: string };
   // the fit
   /** A variance parameter's likelihood has no maximum that the search could reach. */
   'no-convergence': { readonly parameter: string; readonly value: number; readonly iterations: number };
+  /** At the fixed point means are not inside the range that their variances need. fitted: shares, or rates; high: null where there is none. */
+  'fitted-outside': {
+    readonly part: string;
+    readonly labels: readonly string[];
+    readonly fitted: readonly number[];
+    readonly low: number;
+    readonly high: number | null;
+  };
+  /** Cells of none or all that the terms tell apart from the others: the likelihood has no maximum. */
+  separated: { readonly labels: readonly string[]; readonly coefficients: readonly string[] };
+  /** Fitted means and their variances do not come to rest. */
+  'not-settled': { readonly part: string; readonly rounds: number };
   /** Residuals are zero throughout, so that nothing of the scale can be estimated. */
   'nothing-left-over': { readonly cells: number; readonly coefficients: number };
   // usage
@@ -239,10 +261,16 @@ const exits: { readonly [C in Code]: ExitStatus } = {
   'dependent-columns': 4,
   'one-level': 4,
   'cluster-cuts-block': 4,
+  'too-few-clusters': 4,
+  'block-too-large': 4,
+  'cluster-decides': 4,
   'unknown-coefficient': 3,
   'leverage-one': 4,
   'not-available': 4,
   'no-convergence': 4,
+  'fitted-outside': 4,
+  separated: 4,
+  'not-settled': 4,
   'nothing-left-over': 4,
   'unknown-verb': 2,
   'unknown-option': 2,

@@ -1,6 +1,7 @@
-import { lackingIn, roleLacking, sameVariance } from './offered-parts';
+import { withCorrelation, withoutTogether } from './edit-parts';
+import { roleLacking, sameVariance } from './offered-parts';
 import { isSampling } from './parameter-names';
-import type { Part, Plan, Rival, Roles, Variance } from './plan';
+import type { Correlation, Part, Plan, Rival, Roles, Variance } from './plan';
 
 /** Where each number comes from. */
 export type Origin = 'respondents' | 'own-error' | 'error-to-a-factor' | 'share' | 'count' | 'complete' | 'unknown';
@@ -24,10 +25,10 @@ export type ProposalReason =
   | 'mean-of-respondents'
   | 'error-given'
   | 'error-to-a-factor'
-  | 'share-wished'
-  | 'share-by-size'
-  | 'count-wished'
-  | 'count-by-size'
+  | 'share-of-size'
+  | 'share-not-stated'
+  | 'count-over-exposure'
+  | 'count-not-stated'
   | 'complete-constant'
   | 'unknown-with-size'
   | 'unknown-constant'
@@ -38,19 +39,18 @@ export type ProposalReason =
   | 'between-denied'
   | 'between-in-constant'
   | 'between-with-exponent'
+  | 'between-with-link'
   | 'independent'
   | 'together-left-open'
-  | 'group-wished'
-  | 'order-wished';
+  | 'together-with-link'
+  | 'group-shared'
+  | 'group-in-sampling'
+  | 'order-between'
+  | 'order-in-sampling';
 
 export interface StructureProposal {
-  /** What this version can fit. */
   readonly variance: Variance;
-  /** What the answers ask for, where this version lacks a piece of it; null where the proposal is that already. */
-  readonly wished: Variance | null;
-  /** Pieces that the wish holds and this version does not fit. */
-  readonly lacking: readonly string[];
-  /** One or two a question, in the order of the questions. */
+  /** One a question, in the order of the questions. */
   readonly reasons: {
     readonly origin: readonly ProposalReason[];
     readonly beyond: readonly ProposalReason[];
@@ -63,23 +63,28 @@ export interface StructureProposal {
 /**
  * A variance structure from the answers to three plain questions, with its reasons: to be accepted or changed, never taken unasked.
  *
- * roles: what the plan says each column is; a part whose role is missing is not proposed, and the reason says so.
+ * roles: what the plan says each column is; a part whose role is missing is not proposed, and the reason says so. outcomeScale: rates on the log
+ * scale are fitted by the likelihood of their counts, which has one part alone.
  *
- *     proposeStructure({ origin: 'respondents', beyond: 'open', together: { kind: 'no' } }, roles).variance.parts
+ *     proposeStructure({ origin: 'respondents', beyond: 'open', together: { kind: 'no' } }, plan).variance.parts
  *     // per-size, between
  */
-export function proposeStructure(answers: StructureAnswers, roles: Roles): StructureProposal {
+export function proposeStructure(
+  answers: StructureAnswers,
+  { roles, outcomeScale }: Pick<Plan, 'roles' | 'outcomeScale'>,
+): StructureProposal {
   const sampling = samplingFor(answers.origin, roles);
-  const between = betweenFor(answers.beyond, sampling.part);
-  const extra = togetherFor(answers.together, between.part !== null);
-  const variance = structure([sampling.part, ...listed(between.part)]);
-  const wish = structure([sampling.wished, ...listed(extra.between ?? between.part), ...listed(extra.shared)]);
-  const lacking = lackingIn(wish);
+  const alone = outcomeScale === 'log' && sampling.part.kind === 'counts';
+  const between: BetweenChoice = alone
+    ? { part: null, reason: 'between-with-link' }
+    : betweenFor(answers.beyond, sampling.part);
+  const bare = [sampling.part, ...(between.part === null ? [] : [between.part])];
+  const whole: TogetherChoice =
+    alone && ties(answers.together) ? { parts: bare, reason: 'together-with-link' } : together(answers.together, bare);
+  const variance = structure(whole.parts);
   return {
     variance,
-    wished: lacking.length > 0 ? wish : null,
-    lacking,
-    reasons: { origin: sampling.reasons, beyond: [between.reason], together: [extra.reason] },
+    reasons: { origin: [sampling.reason], beyond: [between.reason], together: [whole.reason] },
     beside: besideFor(variance, roles),
   };
 }
@@ -88,14 +93,9 @@ function structure(parts: readonly Part[]): Variance {
   return { parts: [...parts], fixed: {} };
 }
 
-function listed(part: Part | null): Part[] {
-  return part === null ? [] : [part];
-}
-
 interface SamplingChoice {
   readonly part: Part;
-  readonly wished: Part;
-  readonly reasons: readonly ProposalReason[];
+  readonly reason: ProposalReason;
 }
 
 const constant: Part = { kind: 'constant', correlation: null };
@@ -104,75 +104,101 @@ const bySizePower: Part = { kind: 'size-power', exponent: 'estimate', correlatio
 const plainBetween: Part = { kind: 'between', correlation: null };
 
 function samplingFor(origin: Origin, roles: Roles): SamplingChoice {
-  const stands = (part: Part, ...reasons: ProposalReason[]): SamplingChoice => ({ part, wished: part, reasons });
   const sized = roles.size !== null;
   switch (origin) {
     case 'respondents':
-      return sized ? stands(perSize, 'mean-of-respondents') : stands(constant, 'size-lacking');
+      return sized ? { part: perSize, reason: 'mean-of-respondents' } : { part: constant, reason: 'size-lacking' };
     case 'own-error':
     case 'error-to-a-factor': {
-      if (roles.error === null) return sized ? stands(perSize, 'error-lacking') : stands(constant, 'error-lacking');
+      if (roles.error === null) return { part: sized ? perSize : constant, reason: 'error-lacking' };
       const exact = origin === 'own-error';
       const part: Part = { kind: 'given', scale: exact ? 'fixed' : 'free', freedom: null, correlation: null };
-      return stands(part, exact ? 'error-given' : 'error-to-a-factor');
+      return { part, reason: exact ? 'error-given' : 'error-to-a-factor' };
     }
     case 'share':
     case 'count':
       return countedFor(origin, roles);
     case 'complete':
-      return stands(constant, 'complete-constant');
+      return { part: constant, reason: 'complete-constant' };
     case 'unknown':
-      return sized ? stands(bySizePower, 'unknown-with-size') : stands(constant, 'unknown-constant');
+      return sized
+        ? { part: bySizePower, reason: 'unknown-with-size' }
+        : { part: constant, reason: 'unknown-constant' };
   }
 }
 
-/** Shares and rates: their own parts are wished for; until they can be fitted, by size or by exposure. */
+/** Shares and rates have parts of their own; where a role of theirs is not stated, by size or by exposure. */
 function countedFor(origin: 'share' | 'count', roles: Roles): SamplingChoice {
   const share = origin === 'share';
-  const wished: Part = { kind: share ? 'binomial' : 'counts', scale: 'free', correlation: null };
-  const wish: ProposalReason = share ? 'share-wished' : 'count-wished';
-  if (lackingIn({ parts: [wished] }).length === 0 && roleLacking(wished.kind, roles) === null)
-    return { part: wished, wished, reasons: [wish] };
-  if (roles.size !== null) return { part: perSize, wished, reasons: [wish, share ? 'share-by-size' : 'count-by-size'] };
-  if (roles.exposure === null) return { part: constant, wished, reasons: [wish, 'size-lacking'] };
-  const part: Part = { kind: 'proxy', column: roles.exposure, exponent: -1, correlation: null };
-  return { part, wished, reasons: [wish, 'count-by-size'] };
+  const kind = share ? 'binomial' : 'counts';
+  if (roleLacking(kind, roles) === null && !(share && roles.count !== null && roles.exposure !== null))
+    return {
+      part: { kind, scale: 'free', correlation: null },
+      reason: share ? 'share-of-size' : 'count-over-exposure',
+    };
+  const reason: ProposalReason = share ? 'share-not-stated' : 'count-not-stated';
+  if (roles.size !== null) return { part: perSize, reason };
+  if (roles.exposure === null) return { part: constant, reason: share ? 'size-lacking' : reason };
+  return { part: { kind: 'proxy', column: roles.exposure, exponent: -1, correlation: null }, reason };
 }
 
-function betweenFor(beyond: Beyond, sampling: Part): { readonly part: Part | null; readonly reason: ProposalReason } {
+interface BetweenChoice {
+  readonly part: Part | null;
+  readonly reason: ProposalReason;
+}
+
+function betweenFor(beyond: Beyond, sampling: Part): BetweenChoice {
   if (sampling.kind === 'constant') return { part: null, reason: 'between-in-constant' };
   if (beyond === 'no') return { part: null, reason: 'between-denied' };
   if (sampling.kind === 'size-power') return { part: null, reason: 'between-with-exponent' };
   return { part: plainBetween, reason: beyond === 'yes' ? 'between-stated' : 'between-left-open' };
 }
 
-interface Extra {
-  readonly shared: Part | null;
-  /** Takes the place of the plain between part. */
-  readonly between: Part | null;
+interface TogetherChoice {
+  readonly parts: readonly Part[];
   readonly reason: ProposalReason;
 }
 
-function togetherFor(together: Together, hasBetween: boolean): Extra {
-  switch (together.kind) {
+function ties({ kind }: Together): boolean {
+  return kind === 'group' || kind === 'order';
+}
+
+/**
+ * Cells that move together: in a group by a shock that they share; along an order by what sets cells apart.
+ *
+ * Where nothing sets them apart beyond sampling it is the sampling errors themselves that go together.
+ */
+function together(answer: Together, parts: readonly Part[]): TogetherChoice {
+  const last = parts.at(-1) as Part;
+  const correlated = (correlation: Correlation): readonly Part[] => [
+    ...parts.slice(0, -1),
+    withCorrelation(last, correlation),
+  ];
+  // The variance of these holds what lies between cells.
+  const apart = last.kind === 'between' || last.kind === 'constant' || last.kind === 'size-power';
+  switch (answer.kind) {
     case 'no':
-      return { shared: null, between: null, reason: 'independent' };
+      return { parts, reason: 'independent' };
     case 'open':
-      return { shared: null, between: null, reason: 'together-left-open' };
+      return { parts, reason: 'together-left-open' };
     case 'group':
-      return { shared: { kind: 'shared', by: [...together.by] }, between: null, reason: 'group-wished' };
-    case 'order': {
-      const correlation = { kind: 'serial' as const, by: [...together.by], order: together.order };
-      return { shared: null, between: hasBetween ? { kind: 'between', correlation } : null, reason: 'order-wished' };
-    }
+      return apart
+        ? { parts: [...parts, { kind: 'shared', by: [...answer.by] }], reason: 'group-shared' }
+        : { parts: correlated({ kind: 'exchangeable', by: [...answer.by] }), reason: 'group-in-sampling' };
+    case 'order':
+      return {
+        parts: correlated({ kind: 'serial', by: [...answer.by], order: answer.order }),
+        reason: apart ? 'order-between' : 'order-in-sampling',
+      };
   }
 }
 
-/** What a reader would ask about: equal weights, weights by size, the given errors, the proposal without its between part, half-way between. */
+/** What a reader would ask about: cells taken as independent, equal weights, weights by size, given errors, no between part, half-way between. */
 function besideFor(variance: Variance, roles: Roles): Rival[] {
   const halfway: Variance = structure([{ kind: 'size-power', exponent: 0.5, correlation: null }]);
   const bare = variance.parts.filter(isSampling);
   const rivals: Rival[] = [
+    withoutTogether(variance),
     'constant',
     ...(roles.size === null ? [] : (['per-size'] as const)),
     ...(roles.error === null ? [] : (['given'] as const)),

@@ -11,6 +11,7 @@ import type {
   Evidence,
   EvidenceTest,
   FitResult,
+  IndividualLevel,
   QuestionResult,
   Result,
 } from './result';
@@ -113,6 +114,14 @@ const fitted = shaped<FitResult>()(
   }),
 );
 
+const individualLevel = shaped<IndividualLevel>()(
+  v.strictObject({
+    coefficients,
+    ...{ persons: number, residualFreedom: number, residualSd: maybe, rSquared: maybe, withinSd: maybe },
+    lackOfFit: v.nullable(v.strictObject({ statistic: number, freedom1: number, freedom2: number, p: number })),
+  }),
+);
+
 const cell = shaped<CellResult>()(
   v.strictObject({
     ...{ label: text, size: maybe, effectiveSize: maybe, variance: number, observed: number, fitted: number },
@@ -125,7 +134,7 @@ const cell = shaped<CellResult>()(
 
 const price = v.strictObject({
   ...{ term: text, claimedSe: maybe, expectedClaimedSe: maybe },
-  ...{ actualSe: maybe, cost: number, claimedOverActual: maybe },
+  ...{ actualSe: maybe, cost: maybe, claimedOverActual: maybe },
 });
 
 const beside = shaped<BesideResult>()(
@@ -228,9 +237,24 @@ const exponentSupport = v.strictObject({
 });
 
 const bound = v.strictObject({
-  ...{ term: text, low: number, high: number, weightsHeld: truth },
-  refitted: v.nullable(v.strictObject({ low: number, high: number })),
+  ...{ term: text, low: maybe, high: maybe, weightsHeld: truth },
+  refitted: v.nullable(v.strictObject({ low: maybe, high: maybe })),
   survives: v.strictObject({ sign: truth, significance: truth }),
+  over: v.strictObject({ cells: number, brought: number, outside: number, vertices: number, all: truth }),
+});
+
+const need = { se: maybe, cells: maybe, persons: maybe };
+
+const whatItTakes = v.strictObject({
+  ...{ term: text, samplingShare: maybe, floor: maybe },
+  halfWidth: v.nullable(v.strictObject(need)),
+  matters: v.nullable(v.strictObject({ ...need, difference: number })),
+});
+
+const bootstrapBoundary = v.strictObject({
+  zero: v.array(text),
+  likelihood: v.picklist(['full', 'restricted']),
+  ...{ statistic: number, replications: number, seed: number, count: number, p: number, floor: number },
 });
 
 const overturn = v.strictObject({
@@ -261,7 +285,7 @@ export const resultSchema = shaped<Result>()(
     data,
     fit: fitted,
     robustBeside: v.nullable(v.array(v.strictObject({ term: text, se: maybe, ratioToModel: maybe }))),
-    individualLevel: v.null(),
+    individualLevel: v.nullable(individualLevel),
     cells: v.array(cell),
     effectiveCells: maybe,
     beside: v.array(beside),
@@ -276,8 +300,8 @@ export const resultSchema = shaped<Result>()(
     exponentSupport: v.nullable(exponentSupport),
     bounds: v.array(bound),
     commonCorrelation: v.array(v.strictObject({ rho: number, term: text, se: number })),
-    whatItTakes: v.null(),
-    bootstrapTau2: v.null(),
+    whatItTakes: v.nullable(v.array(whatItTakes)),
+    bootstrapTau2: v.nullable(v.array(bootstrapBoundary)),
     overturn: v.array(overturn),
     selfChecks: v.array(v.strictObject({ check: text, passed: truth, figure: maybe })),
     cautions: v.array(caution),

@@ -10,7 +10,8 @@ export interface Result {
   data: DataUsed;
   fit: FitResult;
   robustBeside: RobustBeside[] | null;
-  individualLevel: null;
+  /** What the respondents' own least squares would give; null where no deviations inside cells are given. */
+  individualLevel: IndividualLevel | null;
   cells: CellResult[];
   effectiveCells: number | null;
   beside: BesideResult[];
@@ -25,8 +26,10 @@ export interface Result {
   exponentSupport: ExponentSupport | null;
   bounds: Bound[];
   commonCorrelation: CommonCorrelation[];
-  whatItTakes: null;
-  bootstrapTau2: null;
+  /** By coefficient, in their order; null in results of before it was told. */
+  whatItTakes: WhatItTakes[] | null;
+  /** One for each set of variances or correlations whose vanishing was tested by draws; null where none was. */
+  bootstrapTau2: BootstrapBoundary[] | null;
   overturn: Overturn[];
   selfChecks: SelfCheck[];
   cautions: Caution[];
@@ -136,6 +139,22 @@ export interface RobustBeside {
   ratioToModel: number | null;
 }
 
+/** Least squares on the respondents themselves, from means, sizes and deviations inside cells. */
+export interface IndividualLevel {
+  coefficients: Coefficient[];
+  /** Sum of sizes. */
+  persons: number;
+  /** Persons less coefficients. */
+  residualFreedom: number;
+  residualSd: number | null;
+  /** Of persons, not of averages. */
+  rSquared: number | null;
+  /** Pooled over cells; null with one person a cell. */
+  withinSd: number | null;
+  /** Whether cells scatter around the terms by more than their persons do inside them. */
+  lackOfFit: { statistic: number; freedom1: number; freedom2: number; p: number } | null;
+}
+
 export interface CellResult {
   label: string;
   size: number | null;
@@ -169,7 +188,8 @@ export interface Price {
   expectedClaimedSe: number | null;
   /** Null where as many cells as terms leave the fitted scale undefined; so is what stands on it below. */
   actualSe: number | null;
-  cost: number;
+  /** Null where Omega has no inverse: no weighting is best. */
+  cost: number | null;
   claimedOverActual: number | null;
 }
 
@@ -293,19 +313,59 @@ export interface ExponentSupport {
   ranges: { term: string; low: number; high: number; excludesZero: boolean }[];
 }
 
+/** The range of one coefficient over all admissible values; an end is null where an open value leads there. */
 export interface Bound {
   term: string;
-  low: number;
-  high: number;
+  low: number | null;
+  high: number | null;
+  /** False: exact. True: weights held at the chosen fit, or covariates moved by first-order steps. */
   weightsHeld: boolean;
-  refitted: { low: number; high: number } | null;
+  /** Everything fitted again at the two extremes; null where weights are not held. */
+  refitted: { low: number | null; high: number | null } | null;
   survives: { sign: boolean; significance: boolean };
+  /** cells: with uncertain values; brought: of them, left out of the fit; outside: limited, and wanting something else; all: every vertex was tried. */
+  over: { cells: number; brought: number; outside: number; vertices: number; all: boolean };
 }
 
 export interface CommonCorrelation {
   rho: number;
   term: string;
   se: number;
+}
+
+/** What would give a coefficient a given error: cells in all, persons per cell as a multiple of the present ones; null where no number does. */
+export interface Need {
+  /** The error asked for, at the present freedom. */
+  se: number | null;
+  cells: number | null;
+  persons: number | null;
+}
+
+export interface WhatItTakes {
+  term: string;
+  /** Share of sampling in the coefficient's error variance: all that more persons per cell can take away. */
+  samplingShare: number | null;
+  /** The error that stays however many persons a cell has. */
+  floor: number | null;
+  /** For an interval half as wide. */
+  halfWidth: Need | null;
+  /** For the smallest difference that matters to be found with power .8. */
+  matters: (Need & { difference: number }) | null;
+}
+
+/** Likelihood ratio of parameters at their boundary against draws from the fit without them. */
+export interface BootstrapBoundary {
+  /** Names of the parameters that are zero under the null. */
+  zero: string[];
+  likelihood: 'full' | 'restricted';
+  statistic: number;
+  replications: number;
+  seed: number;
+  /** Draws whose statistic is no smaller. */
+  count: number;
+  p: number;
+  /** The smallest p value that so many draws can give. */
+  floor: number;
 }
 
 export type ChangeKind = 'rival' | 'cell' | 'block' | 'exponent' | 'bound' | 'robust';

@@ -6,10 +6,11 @@ import { definitions } from '../words/definitions';
 import { fitLines, robustSentence, rSquaredRemark, searchSentence } from '../words/goodness';
 import { captions, headings, heads } from '../words/headings';
 import { number } from '../words/numbers';
-import { logScaleRemark, productRemark, withheldNote } from '../words/remarks';
+import { logitScaleRemark, logScaleRemark, productRemark, withheldNote } from '../words/remarks';
 import { stepOf } from '../words/units';
 import { heading, left, list, num, paragraph, right, sentences, table, valued, words } from './blocks';
 import { coefficientCells, coefficientHeads, decimalsOf } from './coefficient-rows';
+import { inferenceBlocks } from './inference';
 
 /** Up to so many coefficients are told in words too. */
 const IN_WORDS = 8;
@@ -30,6 +31,7 @@ export function coefficientBlocks(result: Result): Block[] {
       },
       [definitions.coefficient],
     ),
+    ...inferenceBlocks(result),
     ...(coefficients.length <= IN_WORDS ? list(coefficientLines(result)) : []),
     ...paragraph(remarks(result)),
     ...carried(result),
@@ -40,7 +42,7 @@ function remarks(result: Result): string {
   const { plan, fit } = result;
   const shared = fit.coefficients.some(({ term }) => term !== 'intercept' && stepOf(result, term).more === null);
   return sentences(
-    plan.outcomeScale === 'log' ? logScaleRemark : null,
+    plan.outcomeScale === 'log' ? logScaleRemark : plan.outcomeScale === 'logit' ? logitScaleRemark : null,
     shared ? productRemark : null,
     carriedSentence(result),
   );
@@ -115,7 +117,7 @@ export function robustBlocks(result: Result): Block[] {
 export function fitBlocks(result: Result): Block[] {
   return [
     heading(3, headings.fit),
-    ...paragraph(sentences(rSquaredRemark, searchSentence(result))),
+    ...paragraph(sentences(rSquaredRemark(result.plan), searchSentence(result))),
     ...table({
       caption: captions.fit,
       head: [left(heads.figure, 2), right(heads.value), left(heads.says, 2)],

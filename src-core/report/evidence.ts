@@ -14,7 +14,7 @@ import {
   readingNames,
   readingSentences,
 } from '../words/readings';
-import { evidenceLead, sharedTests, untestedDependence } from '../words/remarks';
+import { evidenceLead, sharedTests, untestedBeyondStated, untestedDependence } from '../words/remarks';
 import { testAccount } from '../words/test-accounts';
 import { heading, left, list, num, paragraph, right, sentences, table, unbroken, valued, words } from './blocks';
 
@@ -58,7 +58,9 @@ function notTested(evidence: readonly Evidence[]): string {
   const by = evidence
     .filter(({ test, p: value }) => test === 'dependence' && value !== null)
     .map((one) => pairedBy(one) ?? []);
-  return by.length === 0 ? untestedDependence : sharedTests(by.map((columns) => `by ${columns.join(' and ')}`));
+  if (by.length > 0) return sharedTests(by.map((columns) => `by ${columns.join(' and ')}`));
+  const stated = evidence.some(({ test, detail }) => test === 'dependence' && detail['why'] === 'correlated');
+  return stated ? untestedBeyondStated : untestedDependence;
 }
 
 /** Every test with its figures, reading, smallest departure and how it was made. */

@@ -1,3 +1,4 @@
+import { ownScaleAnswer } from '../figures/own-scale';
 import type { Block } from '../protocol/document';
 import type { Estimated, QuestionResult, Result } from '../protocol/result';
 import { referenceText } from '../words/coefficients';
@@ -18,7 +19,11 @@ export function questionBlocks(result: Result): Block[] {
     ...questions.flatMap((one, i) => [
       heading(3, questionTitle(one)),
       ...paragraph(
-        sentences(one.question.name === null ? null : questionText(one.question), answerSentence(result, one)),
+        sentences(
+          one.question.name === null ? null : questionText(one.question),
+          answerSentence(result, one),
+          ownScaleAnswer(result, one),
+        ),
         i === first ? [definitions.threeIntervals] : undefined,
       ),
       ...intervals(result, one),

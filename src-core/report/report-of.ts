@@ -9,7 +9,9 @@ import { coefficientBlocks, fitBlocks, robustBlocks } from './coefficients';
 import { dataBlocks, omittedAppendix } from './data';
 import type { EditionFacts, NoteFacts } from './edition-facts';
 import { evidenceAppendix, evidenceBlocks } from './evidence';
+import { individualBlocks } from './individual';
 import { influenceBlocks, overturnBlocks } from './influence';
+import { boundsBlocks, drawsBlocks, takesBlocks, togetherBlocks } from './limits';
 import { withNotes } from './notes';
 import { questionBlocks } from './questions';
 import { statementBlocks } from './statement';
@@ -60,6 +62,7 @@ export function reportOf({
         ['data', () => dataBlocks(result)],
         ['fit', () => coefficientBlocks(result)],
         ['robustBeside', () => robustBlocks(result)],
+        ['individualLevel', () => individualBlocks(result)],
         ['fit', () => fitBlocks(result)],
         ['questions', () => questionBlocks(result)],
         ['beside', () => besideBlocks(result)],
@@ -68,8 +71,12 @@ export function reportOf({
         ['exponentScan', () => scanBlocks(result)],
         ['betweenRules', () => rulesBlocks(result)],
         ['evidence', () => evidenceBlocks(result)],
+        ['bootstrapTau2', () => drawsBlocks(result)],
+        ['commonCorrelation', () => togetherBlocks(result)],
         [null, () => influenceBlocks(result)],
+        ['bounds', () => boundsBlocks(result)],
         ['overturn', () => overturnBlocks(result)],
+        ['whatItTakes', () => takesBlocks(result)],
         ['cautions', () => cautionBlocks(result, tried)],
         [null, () => methodBlocks(result)],
         ['selfChecks', () => checkBlocks(result)],

@@ -7,6 +7,7 @@ import { figureWords, howToRead } from '../words/figures';
 import { chiSquareSentence } from '../words/goodness';
 import { captions, headings, heads } from '../words/headings';
 import { headlineTerm } from '../words/headline';
+import { covarianceEquation } from '../words/linked-cells';
 import { interval, levelText, number } from '../words/numbers';
 import { candidatesSentence } from '../words/prices';
 import { readingSentences } from '../words/readings';
@@ -33,6 +34,7 @@ export function statementBlocks(result: Result, tried: number): Block[] {
     fit.coefficients.map((one) => one.term),
   );
   const equation = varianceEquation(result);
+  const covariance = covarianceEquation(result);
   const typical = typicalCell(result);
   return [
     heading(2, headings.variance),
@@ -53,6 +55,7 @@ export function statementBlocks(result: Result, tried: number): Block[] {
     ),
     { kind: 'equation', ...model },
     { kind: 'equation', ...equation, ...unitNote(result) },
+    ...(covariance ? [{ kind: 'equation' as const, ...covariance }] : []),
     ...(typical !== undefined && fit.variance.every(({ estimate }) => estimate !== null)
       ? paragraph(workedCell(result, typical))
       : []),

@@ -1,4 +1,4 @@
-import { exp } from '../numbers/elementary';
+import { asFactor } from '../figures/own-scale';
 import type { Block } from '../protocol/document';
 import type { Caution, Coefficient, Result } from '../protocol/result';
 import { cautionGroupNames, cautionSentence } from '../words/cautions';
@@ -44,10 +44,9 @@ function answerBlocks(result: Result, term: string, first: boolean): Block[] {
   ];
 }
 
-function factor(result: Result, { estimate, low, high }: Coefficient): string | null {
-  if (result.plan.outcomeScale !== 'log') return null;
-  const of = (value: number | null): number | null => (value === null ? null : exp(value));
-  return factorSentence(result, { estimate: exp(estimate), low: of(low), high: of(high) });
+function factor(result: Result, own: Coefficient): string | null {
+  const found = asFactor(result.plan, own);
+  return found && factorSentence(result, found);
 }
 
 function cautionBlocks(result: Result): Block[] {

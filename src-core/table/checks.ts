@@ -1,3 +1,4 @@
+import { isLinked } from '../protocol/linked';
 import { problem } from '../protocol/outcome';
 import type { Plan, Transform } from '../protocol/plan';
 import type { Column } from './column';
@@ -164,9 +165,11 @@ function noteFirst(
   frame.problems.push(problem('transform-undefined', facts, at));
 }
 
-/** An outcome without counts behind it has its log only above 0, its logit only inside its range. */
-function noteOutcomeScale(frame: Frame, { roles, outcomeScale }: Plan, used: readonly number[]): void {
-  if (roles.outcome === null || outcomeScale === 'identity') return;
+/** An outcome without counts behind it has its log only above 0, its logit only inside its range; a share of a size is a count, which can have halves. */
+function noteOutcomeScale(frame: Frame, plan: Plan, used: readonly number[]): void {
+  const { roles, outcomeScale, addedHalf } = plan;
+  if (roles.outcome === null || outcomeScale === 'identity' || isLinked(plan)) return;
+  if (outcomeScale === 'logit' && roles.size !== null && addedHalf !== 'no' && addedHalf !== null) return;
   const high = roles.outcomeUnit === 'percent' ? 100 : 1;
   const fails = outcomeScale === 'log' ? (y: number) => y <= 0 : (y: number) => y <= 0 || y >= high;
   noteFirst(frame, { column: frame.holder(roles.outcome), used, at: '/outcomeScale', word: outcomeScale, fails });

@@ -140,7 +140,7 @@ const NEGATIVE = -1e-10;
 /**
  * Judges the matrix of the used cells: positive definite where it is to be inverted, else without a clearly negative eigenvalue.
  *
- * Inverted: under the target "structure", where its freedom is not given or above the number of cells. Named is the first pair of cells whose
+ * Inverted: under the target "structure", or where something is estimated through its inverse, and its freedom is not given or above the number of cells. Named is the first pair of cells whose
  * correlation is 1 or more in size, otherwise the smallest eigenvalue. The matrix is scaled to unit diagonal for the judgement alone.
  */
 export function indefiniteness(
@@ -168,6 +168,20 @@ export function indefiniteness(
     smallestEigenvalue: pair ? null : smallest,
   };
   return problem('matrix-not-positive-definite', facts, at);
+}
+
+/** The matrix of the used cells, row after row; mirrored entries, equal but for rounding, at their mean. */
+export function squareOf(matrix: LabelledMatrix, used: readonly number[]): Float64Array {
+  const k = used.length;
+  const places = used.map((row) => matrix.rows.get(row) as { line: number; field: number });
+  const square = new Float64Array(k * k);
+  for (const [i, one] of places.entries())
+    for (const [j, other] of places.entries()) {
+      const entry = matrix.valueAt(one.line, other.field);
+      const mirror = matrix.valueAt(other.line, one.field);
+      square[i * k + j] = entry === mirror ? entry : entry / 2 + mirror / 2;
+    }
+  return square;
 }
 
 function firstPair(

@@ -2,20 +2,22 @@ import { takeRows } from '../numbers/decimals';
 import { done, type Outcome, problem, refuseAll } from '../protocol/outcome';
 import type { Plan } from '../protocol/plan';
 import { type Assembled, assemble, type PlanWithSources } from './assemble';
-import type { Cells, NumberColumn } from './cells';
-import { noteImpossible, noteUndefined, noteUnreadable } from './checks';
-import type { Column } from './column';
+import type { Cells, LimitedCells, NumberColumn } from './cells';
+import { noteImpossible, noteUndefined, noteUnreadable, type RoleColumns } from './checks';
+import { type Column, once } from './column';
 import type { NumericPlace } from './derive';
 import type { Frame } from './frame';
-import { type Included, included } from './inclusion';
+import { type Included, included, type UsedColumn } from './inclusion';
 import { labelsOf, lookAlikes, noteRepeatedLabel } from './labels';
+import { limitedCells } from './limited';
+import { squareOf } from './matrix';
 import { neighbourPairs } from './neighbours';
 import { type OmittedBy, omittedRows } from './omit';
 import { noteRepeatedOrder } from './order';
 import { type Place, placesOf } from './places';
 import { partsOf } from './plan-files';
 import { doublesOf, positivesOf, type RoleValues, roleColumns, roleValues } from './roles';
-import { noteStructureFaults } from './structure-checks';
+import { noteStructureFaults, readMatrices } from './structure-checks';
 
 /**
  * From a plan and its files to the used cells: read, join, derive (over all rows), omit, checks, inclusion.
@@ -41,17 +43,23 @@ export function prepareRows(
   const checked = checkRows(assembled.value, plan);
   const { used, reasons } = checked.mask;
   noteUndefined(frame, { plan, used, places: checked.numeric });
-  if (used.length > 0) noteStructureFaults(assembled.value, plan, used);
+  const matrices: Cells['matrices'] =
+    used.length > 0 ? noteStructureFaults(assembled.value, plan, used) : new Map<string, Float64Array>();
   const neighbours = neighboursOf(assembled.value, plan, used);
   if (used.length === 0 && frame.complete)
     frame.problems.push(problem('no-cells-left', { rows: frame.rows, reasons }, '/data'));
   if (frame.problems.length > 0) return refuseAll(frame.problems);
-  const cells = cellsOf({ plan, assembled: assembled.value, neighbours, ...checked });
+  const asked = { plan, assembled: assembled.value, neighbours, matrices, rows: used, values: checked.values };
+  const limited = limitedIn({ plan, assembled: assembled.value, checked });
+  const cells = { ...cellsOf({ ...asked, omitted: checked.mask.omitted }), limited };
   return done({ cells, frame, values: checked.values });
 }
 
 interface Checked {
   readonly mask: Included;
+  readonly omittedBy: OmittedBy;
+  readonly columns: readonly UsedColumn[];
+  readonly roles: RoleColumns;
   readonly values: RoleValues;
   /** Every place that needs numbers. */
   readonly numeric: readonly NumericPlace[];
@@ -76,12 +84,44 @@ function checkRows({ frame, needed }: Assembled, plan: Plan): Checked {
   const columns = roleColumns(frame, plan.roles);
   noteImpossible(frame, { plan, columns, rows: left });
   const values = roleValues(plan, { columns, rows: frame.rows });
+  const cellColumns = places.flatMap(({ column, need }) =>
+    need === 'number' || need === 'category' ? [{ column, need }] : [],
+  );
   const mask = included(frame, {
     omittedBy,
-    columns: places.flatMap(({ column, need }) => (need === 'number' || need === 'category' ? [{ column, need }] : [])),
+    columns: cellColumns,
     positives: positivesOf(columns, values, freedomColumns(frame, plan)),
   });
-  return { mask, values, numeric };
+  return { mask, omittedBy, columns: cellColumns, roles: columns, values, numeric };
+}
+
+/** The cells behind the bounds: those of matrices that have a line for each. */
+function limitedIn(of: {
+  readonly plan: Plan;
+  readonly assembled: Assembled;
+  readonly checked: Checked;
+}): LimitedCells | null {
+  const { plan, assembled, checked } = of;
+  const { frame } = assembled;
+  const matrices = once(() => readMatrices(assembled, plan));
+  return limitedCells({
+    ...{
+      frame,
+      plan,
+      mask: checked.mask,
+      omittedBy: checked.omittedBy,
+      columns: checked.columns,
+      roles: checked.roles,
+    },
+    valuesWith: (columns) => roleValues(plan, { columns, rows: frame.rows }),
+    positivesWith: (columns, values) => positivesOf(columns, values, freedomColumns(frame, plan)),
+    placed: (row) => matrices().every(({ rows }) => rows.has(row)),
+    cellsWith: (rows, filled, values) =>
+      cellsOf({
+        ...{ plan, assembled, rows, filled, values, neighbours: null, omitted: checked.mask.omitted },
+        matrices: new Map(matrices().map((matrix) => [matrix.file, squareOf(matrix, rows)])),
+      }),
+  });
 }
 
 type Resolved = Omit<Place, 'column'> & NumericPlace;
@@ -136,17 +176,21 @@ function neighboursOf({ frame, tableOf }: Assembled, plan: Plan, used: readonly 
 function cellsOf(of: {
   readonly plan: Plan;
   readonly assembled: Assembled;
-  readonly mask: Included;
+  /** Rows of the file from 0, in data order. */
+  readonly rows: readonly number[];
+  readonly omitted: Included['omitted'];
   readonly values: RoleValues;
   readonly neighbours: Cells['neighbours'];
+  readonly matrices: Cells['matrices'];
+  /** Columns that have values filled in. */
+  readonly filled?: ReadonlyMap<Column, Column>;
 }): Cells {
-  const { plan, assembled, mask, values, neighbours } = of;
+  const { plan, assembled, rows: used, omitted, values, neighbours, matrices, filled } = of;
   const { frame, files, unmatched } = assembled;
-  const { used, omitted } = mask;
   const named = (name: string): Column => {
     const column = frame.holder(name);
     if (!column) throw new Error(`the data stage did not see the column ${name}`);
-    return column;
+    return filled?.get(column) ?? column;
   };
   const taken = new Map<string, NumberColumn>();
   return {
@@ -168,6 +212,7 @@ function cellsOf(of: {
     texts: (name) => used.map((row) => named(name).texts[row] as string),
     columns: frame.names,
     labelColumns: plan.roles.label ?? [],
+    matrices,
     neighbours,
     data: { rows: frame.rows, used: used.length, omitted, files, unmatched },
     cautions: lookAlikes(frame.labels, used),

@@ -7,7 +7,15 @@ import { levelName } from '../protocol/term-names';
 import type { Assembled } from './assemble';
 import type { Column } from './column';
 import { composed } from './declarations';
-import { asymmetry, freedomOf, indefiniteness, isInverted, labelledMatrix } from './matrix';
+import {
+  asymmetry,
+  freedomOf,
+  indefiniteness,
+  isInverted,
+  type LabelledMatrix,
+  labelledMatrix,
+  squareOf,
+} from './matrix';
 import { inCodePointOrder } from './omit';
 import { noteRepeatedOrder } from './order';
 import { matricesOf, partsOf, structuresOf } from './plan-files';
@@ -16,13 +24,17 @@ import { matricesOf, partsOf, structuresOf } from './plan-files';
  * Notes what the used cells contradict in the plan's structures, whether this version fits them or not: serial orders that repeat inside a block,
  * matrices that do not fit, and fixed parameters of classes that no used cell has.
  *
- * used: rows from 0, in data order.
+ * used: rows from 0, in data order. Returns the matrices of the used cells by file name: count x count, row after row.
  */
-export function noteStructureFaults(assembled: Assembled, plan: Plan, used: readonly number[]): void {
+export function noteStructureFaults(assembled: Assembled, plan: Plan, used: readonly number[]): Matrices {
   noteSerialOrders(assembled, plan, used);
-  noteMatrices(assembled, plan, used);
+  const matrices = noteMatrices(assembled, plan, used);
   for (const { variance, at } of structuresOf(plan)) noteUnknownClasses(assembled, { variance, at, used });
+  return matrices;
 }
+
+/** The used cells' square by file name, row after row; those that fit. */
+type Matrices = ReadonlyMap<string, Float64Array>;
 
 function noteSerialOrders({ frame }: Assembled, plan: Plan, used: readonly number[]): void {
   for (const { part, at } of partsOf(plan)) {
@@ -34,8 +46,14 @@ function noteSerialOrders({ frame }: Assembled, plan: Plan, used: readonly numbe
   }
 }
 
-function noteMatrices({ frame, tableOf }: Assembled, plan: Plan, used: readonly number[]): void {
+/** Whether something is estimated through the inverse of a matrix, whatever the weights: its own scale, or tau^2 by the moments of weighted residuals. */
+function estimatesBy(part: { readonly scale: 'fixed' | 'free' }, { estimate }: Plan): boolean {
+  return part.scale === 'free' || (estimate.method === 'moments' && estimate.rule !== 'hanushek');
+}
+
+function noteMatrices({ frame, tableOf }: Assembled, plan: Plan, used: readonly number[]): Matrices {
   const told = new Set<string>();
+  const matrices = new Map<string, Float64Array>();
   for (const { part, at } of matricesOf(plan)) {
     const table = tableOf(part.file);
     if (table === null || told.has(part.file)) continue;
@@ -43,7 +61,7 @@ function noteMatrices({ frame, tableOf }: Assembled, plan: Plan, used: readonly 
     const read = labelledMatrix(table, against);
     const freedom = freedomOf(part.freedom, (name) => valuesOf(frame.holder(name), used));
     // A rival is fitted with its own weights; a target that states a structure has its weights inverted from it.
-    const byStructure = at.startsWith('/variance/') ? plan.target === 'structure' : true;
+    const byStructure = at.startsWith('/variance/') ? plan.target === 'structure' || estimatesBy(part, plan) : true;
     const inverted = isInverted({ byStructure, freedom, cells: used.length });
     const faults = read.ok
       ? [asymmetry(read.value, against) ?? indefiniteness(read.value, { ...against, inverted })].filter(
@@ -51,8 +69,22 @@ function noteMatrices({ frame, tableOf }: Assembled, plan: Plan, used: readonly 
         )
       : read.problems;
     if (faults.length > 0) told.add(part.file);
+    else if (read.ok && !matrices.has(part.file)) matrices.set(part.file, squareOf(read.value, used));
     frame.problems.push(...faults);
   }
+  return matrices;
+}
+
+/** The plan's matrices, each file once, whichever rows they hold; those that cannot be read are left out. */
+export function readMatrices({ frame, tableOf }: Assembled, plan: Plan): LabelledMatrix[] {
+  const files = new Map<string, LabelledMatrix>();
+  for (const { part, at } of matricesOf(plan)) {
+    const table = tableOf(part.file);
+    if (table === null || files.has(part.file)) continue;
+    const read = labelledMatrix(table, { labels: frame.labels, used: [], at: `${at}/file` });
+    if (read.ok) files.set(part.file, read.value);
+  }
+  return [...files.values()];
 }
 
 function valuesOf(column: Column | null, rows: readonly number[]): number[] {

@@ -21,6 +21,7 @@ type AnswerCode = Extract<
   | 'weights-concentrated'
   | 'variance-at-boundary'
   | 'robust-differs'
+  | 'bounds-undo'
 >;
 
 /** What changes the answer. */
@@ -55,7 +56,22 @@ export const answerCautions: CautionSentences<AnswerCode> = {
       terms.map(({ term, ratio }) => `${term} ${number(ratio, { digits: 2 })} times`),
       4,
     )} the model-based one. Either the structure is wrong or a few cells govern the robust error. Report both.`,
+  'bounds-undo': ({ terms, cells, shift }, plan) => {
+    const named = terms.map(({ term, low, high }) => `${term} (${openRange(low, high)})`);
+    const turns = terms.filter(({ sign }) => !sign).map(({ term }) => term);
+    const signs = turns.length === 0 ? 'Signs hold throughout.' : `The sign of ${listSome(turns, 4)} can turn.`;
+    return `Values of ${plural(cells, 'cell')} are known to within limits only, and over all that they can be ${listSome(named, 4)} ${terms.length === 1 ? 'is' : 'are'} not told from zero. ${signs}${shiftSentence(shift, plan, 'At its furthest, the coefficient of')} Report the range, or obtain the values.`;
+  },
 };
+
+/** A range that may be open at either end. */
+function openRange(low: number | null, high: number | null): string {
+  if (low === null && high === null) return 'without bounds';
+  if (low === null) return `${number(high, { digits: 3 })} or less`;
+  return high === null
+    ? `${number(low, { digits: 3 })} or more`
+    : `${number(low, { digits: 3 })} to ${number(high, { digits: 3 })}`;
+}
 
 function testPhrase({ test, statistic, freedom1, freedom2, p, by }: RejectingTest): string {
   const freedom = [freedom1, freedom2].filter((one) => one !== null).map(freedomText);

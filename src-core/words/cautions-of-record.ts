@@ -1,6 +1,6 @@
 import type { CautionCode, CautionFacts } from '../protocol/cautions';
 import { interceptName } from '../protocol/term-names';
-import type { CautionSentences } from './caution-parts';
+import { type CautionSentences, shiftSentence } from './caution-parts';
 import { count, list, listSome, number, plural, pluralWord, quoted, rangeText } from './numbers';
 import { omissionPhrase } from './omissions';
 
@@ -27,8 +27,8 @@ export const recordCautions: CautionSentences<RecordCode> = {
     `${pluralWord(cells, 'value')} of ${column} ${cells === 1 ? 'is' : 'are'} marked by the source as ${marks[status]}, and used as ${cells === 1 ? 'it stands' : 'they stand'}.`,
   'join-unmatched': ({ file, ours, theirs }) =>
     `Joining ${quoted(file)}: ${plural(ours, 'key')} of the main file met nothing there${ours === 0 ? '' : ', and those rows have no value from it'}; ${plural(theirs, 'key')} of it met nothing here.`,
-  'sizes-within': ({ within }) =>
-    `Sizes are known to within ${number(within, { digits: 3 })} only; weights by size share that uncertainty.`,
+  'sizes-within': ({ within, shift }, plan) =>
+    `Sizes are known to within ${number(within, { digits: 3 })} only; weights by size share that uncertainty.${shiftSentence(shift ?? null, plan, 'Moved that far the worst way, the coefficient of')}`,
   'labels-look-alike': ({ labels, rows }) =>
     `Labels that look alike differ by characters nobody sees: ${listSome(labels.map(quoted))} (rows ${listSome(rows.map(count))}). If they mean the same cell or group, mend the file.`,
 };

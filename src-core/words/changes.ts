@@ -17,7 +17,7 @@ export function changePhrase({ kind, what }: Change, plan: Plan | null = null): 
     case 'exponent':
       return `error variance falling as size to the power ${number(Number(what), { digits: 2 })}`;
     case 'bound':
-      return `the most extreme admissible values of ${what}`;
+      return `${what} at its most extreme admissible values`;
     case 'robust':
       return what === 'model' ? 'model-based errors instead of robust ones' : `robust errors (${what})`;
   }

@@ -9,7 +9,12 @@ export const withheldText = 'withheld';
 
 /** Whether a p value stands in the result but is not shown. */
 export function isWithheld(reference: Reference | null): boolean {
-  return reference !== null && reference.freedom !== null && reference.freedom < FEWEST_FREEDOM;
+  return isFewFreedom(reference?.freedom ?? null);
+}
+
+/** Whether a freedom, the second one of an F test included, is too small to rely on a p value. */
+export function isFewFreedom(freedom: number | null): boolean {
+  return freedom !== null && freedom < FEWEST_FREEDOM;
 }
 
 /** "t on 52", "t on 17.3", "normal"; a dash where there is nothing to compare with. */

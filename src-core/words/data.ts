@@ -1,3 +1,4 @@
+import { isLinked } from '../protocol/linked';
 import type { Plan } from '../protocol/plan';
 import type { CellResult, DataUsed, Omitted, Result } from '../protocol/result';
 import { exact, levelText, list, number, percent, plural, quoted, sizeText } from './numbers';
@@ -90,10 +91,12 @@ export function roleLines(plan: Plan): { readonly role: string; readonly column:
   return lines;
 }
 
-function outcomeSays({ roles, outcomeScale }: Plan): string {
+function outcomeSays(plan: Plan): string {
+  const { roles, outcomeScale } = plan;
   const unit = { number: 'a number', share: 'a share between 0 and 1', percent: 'a percentage between 0 and 100' }[
     roles.outcomeUnit
   ];
+  if (isLinked(plan)) return `${unit}; the terms act on the ${outcomeScale} of its mean`;
   return outcomeScale === 'identity' ? `${unit}, fitted as it stands` : `${unit}, fitted on the ${outcomeScale} scale`;
 }
 

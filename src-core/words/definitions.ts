@@ -50,6 +50,10 @@ export const definitions = {
     about: 'Three intervals',
     text: 'for the fitted mean; for the true mean of a new cell (adds τ²); for its observed mean (adds its sampling variance too).',
   },
+  bounds: {
+    about: 'Over all admissible values',
+    text: 'suppressed, rounded and interval values each take every value that their limits allow, together and in every combination.',
+  },
   overturn: {
     about: 'Overturn',
     text: 'the changes tried that move a coefficient most, and whether they cross zero or the difference that matters.',

@@ -1,3 +1,4 @@
+import { isLinked } from '../protocol/linked';
 import type { Result } from '../protocol/result';
 import { count, number, percent, plural } from './numbers';
 import { structureName } from './structures';
@@ -26,13 +27,15 @@ export const figureWords = {
     read: 'Strip: interval; upright stroke: estimate; heavy: the stated structure. Upright rules: zero, solid; the smallest difference that matters, dashed.',
     alt: (terms: readonly string[], rows: number): string =>
       `Strips of intervals of ${terms.join(', ')} under ${plural(rows, 'structure')}, one below the other.`,
-    robust: 'stated, robust HC3',
+    robust: (correction: string): string => `stated, robust ${correction}`,
     chosen: (result: Result): string => `${structureName(result.plan.variance)} (stated)`,
   },
   beam: {
     xName: (term: string): string => `pull on ${term}`,
-    yName: (result: Pick<Result, 'plan'>, from: 'mean' | 'zero'): string =>
-      from === 'mean' ? `${responseName(result.plan)} less its weighted mean` : responseName(result.plan),
+    yName: ({ plan }: Pick<Result, 'plan'>, from: 'mean' | 'zero'): string => {
+      const name = `${responseName(plan)}${isLinked(plan) ? ', working values' : ''}`;
+      return from === 'mean' ? `${name} less ${isLinked(plan) ? 'their' : 'its'} weighted mean` : name;
+    },
     caption: (term: string): string => `The beam of ${term}`,
     read: (of: { readonly half: number; readonly value: string; readonly from: 'mean' | 'zero' }): string =>
       `Each cell hangs at its pull, as far off the beam as its value is from ${of.from === 'mean' ? 'the weighted mean' : 'zero'}. Pull times distance, summed over cells, is the coefficient, ${of.value}. Filled: the ${of.half === 1 ? 'cell that carries' : `${count(of.half)} cells that carry`} half of the total pull.`,

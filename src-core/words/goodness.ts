@@ -1,6 +1,9 @@
+import { isLinked, isOfCounts } from '../protocol/linked';
+import type { Plan } from '../protocol/plan';
 import type { FitResult, Result } from '../protocol/result';
 import { freedomText } from './coefficients';
 import { count, number, pIs, plural } from './numbers';
+import { tiesCells } from './structures';
 
 /** One line of the table of figures of the fit. */
 export interface FitLine {
@@ -12,7 +15,7 @@ export interface FitLine {
 }
 
 /** The figures of the fit under their own names, two named R² among them. */
-export function fitLines({ fit, cells, effectiveCells }: Result): FitLine[] {
+export function fitLines({ plan, fit, cells, effectiveCells }: Result): FitLine[] {
   const line = (name: string, value: number | null, says: string, digits = 4): FitLine => ({
     name,
     value,
@@ -31,14 +34,46 @@ export function fitLines({ fit, cells, effectiveCells }: Result): FitLine[] {
     ),
     whole('residual freedom', fit.residualFreedom, 'cells less coefficients'),
     ...(effectiveCells === null ? [] : [line('effective cells', effectiveCells, '(Σw)² / Σw² of the weights')]),
-    line(
-      'weighted R²',
-      rSquared.weighted,
-      `1 − weighted squared residuals over weighted squared distances from ${base}`,
-    ),
-    line('adjusted weighted R²', rSquared.adjusted, 'the same, for the number of coefficients'),
+    ...(isLinked(plan)
+      ? []
+      : [
+          line(
+            'weighted R²',
+            rSquared.weighted,
+            `1 − weighted squared residuals over weighted squared distances from ${base}`,
+          ),
+          line('adjusted weighted R²', rSquared.adjusted, 'the same, for the number of coefficients'),
+        ]),
     line('R² on the unweighted scale', rSquared.raw, '1 − Σr² / Σ(y − mean)²; may be negative'),
     line('residual deviation', fit.residualSd, 'root of the mean squared whitened residual'),
+    ...(fit.deviance === null
+      ? []
+      : [
+          line(
+            'deviance',
+            fit.deviance,
+            'twice what the fit’s log-likelihood falls short of that of the observed values',
+          ),
+        ]),
+    ...likelihoodLines({ plan, fit }, line),
+    ...criteria(fit, line),
+    ...(fit.knappHartungQ === null
+      ? []
+      : [line('Knapp-Hartung factor', fit.knappHartungQ, 'multiplies every variance of a coefficient')]),
+    ...(fit.tau2Bias === null ? [] : [line('bias of τ²', fit.tau2Bias, 'of full likelihood, to first order')]),
+  ];
+}
+
+function likelihoodLines(
+  { plan, fit }: Pick<Result, 'plan' | 'fit'>,
+  line: (name: string, value: number | null, says: string, digits?: number) => FitLine,
+): FitLine[] {
+  if (isLinked(plan))
+    return fit.logLikelihood === null
+      ? []
+      : [line('log-likelihood', fit.logLikelihood, 'of the counts, their coefficients included', 6)];
+  if (isOfCounts(plan) && plan.outcomeScale === 'identity') return [];
+  return [
     line('log-likelihood', fit.logLikelihood, 'full', 6),
     line(
       'restricted log-likelihood',
@@ -46,11 +81,6 @@ export function fitLines({ fit, cells, effectiveCells }: Result): FitLine[] {
       'comparable only for the same columns in the same units',
       6,
     ),
-    ...criteria(fit, line),
-    ...(fit.knappHartungQ === null
-      ? []
-      : [line('Knapp-Hartung factor', fit.knappHartungQ, 'multiplies every variance of a coefficient')]),
-    ...(fit.tau2Bias === null ? [] : [line('bias of τ²', fit.tau2Bias, 'of full likelihood, to first order')]),
   ];
 }
 
@@ -68,7 +98,13 @@ function criteria(
 }
 
 /** R² of averages is not R² of persons. */
-export const rSquaredRemark =
+export function rSquaredRemark(plan: Plan): string {
+  return isLinked(plan)
+    ? 'Under maximum likelihood with a link the deviance judges the fit; the one R² is that of the shares or rates themselves, of averages and not of persons.'
+    : twoRSquared;
+}
+
+const twoRSquared =
   'Two R² stand under their own names, since weights change what is counted. Either describes averages: R² of averages is not R² of persons, and is nearly always the larger.';
 
 /** What judges errors whose scale is fixed. */
@@ -89,10 +125,14 @@ export function chiSquareSentence({ chiSquare }: FitResult): string | null {
 }
 
 /** Model-based and robust errors next to each other. */
-export function robustSentence({ fit, robustBeside }: Result): string | null {
+export function robustSentence({ plan, fit, robustBeside }: Result): string | null {
   if (robustBeside === null) return null;
   const ratios = robustBeside.flatMap(({ ratioToModel }) => (ratioToModel === null ? [] : [ratioToModel]));
-  if (ratios.length === 0) return 'Robust errors are undefined with these cells.';
+  const byBlocks = tiesCells(plan.variance);
+  if (ratios.length === 0)
+    return byBlocks
+      ? 'Robust errors are undefined with these cells: they need two blocks or more that do not go together, and residuals.'
+      : 'Robust errors are undefined with these cells.';
   const [low, high] = [Math.min(...ratios), Math.max(...ratios)];
   const range =
     ratios.length === 1
@@ -107,7 +147,10 @@ export function robustSentence({ fit, robustBeside }: Result): string | null {
     fit.inference.kind === 'robust'
       ? ' The table above prints robust errors; these are HC3 beside the model’s own.'
       : '';
-  return `${ratios.length === 1 ? 'The robust error' : 'Robust errors'} (HC3, on whitened residuals and leverages) ${range}, ${remark}.${kind}`;
+  const how = byBlocks
+    ? 'CR2, on whitened residuals summed by the blocks of cells that go together'
+    : 'HC3, on whitened residuals and leverages';
+  return `${ratios.length === 1 ? 'The robust error' : 'Robust errors'} (${how}) ${range}, ${remark}.${kind}`;
 }
 
 /** How certain the digits are. */

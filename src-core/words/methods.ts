@@ -1,8 +1,11 @@
-import type { Plan } from '../protocol/plan';
+import { isLinked, isOfCounts } from '../protocol/linked';
+import type { Inference, Plan } from '../protocol/plan';
 import type { Result } from '../protocol/result';
 import { testWords } from './evidence-names';
+import { limitMethods } from './methods-of-limits';
 import { list } from './numbers';
 import { ruleName } from './rules';
+import { tiesCells } from './structures';
 
 /** One paragraph of methods with its published sources. */
 export interface Method {
@@ -19,7 +22,7 @@ export function methodsOf(result: Result): Method[] {
     estimateMethod(plan),
     ...targetMethod(plan),
     inferenceMethod(result),
-    ...(result.robustBeside === null ? [] : [robustMethod]),
+    ...(result.robustBeside === null ? [] : [tiesCells(plan.variance) ? blocksMethod : robustMethod]),
     evidenceMethod(result),
     ...(result.beside.length === 0 ? [] : [priceMethod]),
     ...(result.breakEven.length === 0 ? [] : [breakEvenMethod]),
@@ -27,7 +30,8 @@ export function methodsOf(result: Result): Method[] {
     influenceMethod,
     ...(result.cells.some(({ shrunken }) => shrunken !== null) ? [shrunkenMethod] : []),
     ...(result.betweenRules.length === 0 ? [] : [rulesMethod]),
-    goodnessMethod,
+    ...limitMethods(result),
+    isLinked(plan) ? linkedGoodness : goodnessMethod,
     digitsMethod,
   ];
 }
@@ -36,7 +40,9 @@ function structureMethod({ variance }: Plan): Method {
   const sources = [...new Set(variance.parts.map(({ kind }) => partSources[kind]).filter((one) => one !== ''))];
   return {
     title: 'Variance structure',
-    text: 'The covariance of the errors is a sum of parts, here diagonal: cells are independent. Everything below is computed after whitening, that is, after division by the root of each cell’s error variance.',
+    text: tiesCells(variance)
+      ? 'The covariance of the errors is a sum of parts, and cells go together. Everything below is computed after whitening, that is, after division by a root of that covariance, block by block.'
+      : 'The covariance of the errors is a sum of parts, here diagonal: cells are independent. Everything below is computed after whitening, that is, after division by the root of each cell’s error variance.',
     sources: sources.join('; '),
   };
 }
@@ -56,8 +62,27 @@ const partSources: { readonly [K in Plan['variance']['parts'][number]['kind']]: 
   shared: 'Laird & Ware 1982',
 };
 
-function estimateMethod({ estimate }: Plan): Method {
+function estimateMethod(plan: Plan): Method {
+  const { estimate, outcomeScale } = plan;
   const title = 'Estimation';
+  if (isLinked(plan))
+    return {
+      title,
+      text: 'Coefficients maximise the likelihood of the counts, by iteratively reweighted least squares with step halving. What follows from the fit (influence, robust errors, prices, pulls) is that of its last round, linear in the working response. A free scale is the Pearson sum over the residual freedom.',
+      sources: 'McCullagh & Nelder 1989; Albert & Anderson 1984 for whether a maximum exists',
+    };
+  if (isOfCounts(plan) && outcomeScale === 'identity')
+    return {
+      title,
+      text: 'Coefficients come from least squares on whitened data; the variances follow from the fitted means, and both are iterated to a fixed point with step halving. Tests and deletions hold the variances there. No likelihood is told: beside a free factor or another part there is none.',
+      sources: 'Wedderburn 1974; McCullagh & Nelder 1989',
+    };
+  if (isOfCounts(plan))
+    return {
+      title,
+      text: 'Minimum chi-square: least squares on empirical logits (or logs), with variances from the observed shares.',
+      sources: 'Berkson 1955',
+    };
   const solved =
     'Coefficients come from least squares on whitened data, by orthogonal factors with the columns scaled.';
   switch (estimate.method) {
@@ -117,22 +142,12 @@ function targetMethod({ target }: Plan): Method[] {
   ];
 }
 
-function inferenceMethod({ fit }: Result): Method {
+function inferenceMethod({ plan, fit }: Result): Method {
   const title = 'Inference';
   const { inference } = fit;
-  const estimated = fit.variance.some(({ fixed }) => !fixed);
   switch (inference.kind) {
     case 'model':
-      return {
-        title,
-        text:
-          fit.errorFreedom !== null && !estimated
-            ? 'Model-based errors; since the given errors are estimates, each coefficient has Satterthwaite’s freedom.'
-            : estimated
-              ? 'Model-based errors, with the t distribution on cells less coefficients, since variance parameters were estimated.'
-              : 'Model-based errors with the normal distribution, since nothing in the variance was estimated.',
-        sources: fit.errorFreedom !== null && !estimated ? 'Satterthwaite 1946' : 'Aitken 1935',
-      };
+      return modelMethod(title, { plan, fit });
     case 'knapp-hartung':
       return {
         title,
@@ -148,28 +163,73 @@ function inferenceMethod({ fit }: Result): Method {
     case 'kenward-roger':
       return {
         title,
-        text: 'Errors adjusted for the estimated variance parameters, with their own freedom.',
+        text: 'Errors allow for the estimated variance parameters, by their expected information in parameters in which the covariance is linear; each combination of coefficients has its own freedom, and a joint question the scaled F of the paper.',
         sources: 'Kenward & Roger 1997',
       };
     case 'clustered':
-      return {
-        title,
-        text: `Errors clustered by ${list(inference.by)} (${inference.correction}).`,
-        sources: 'Bell & McCaffrey 2002; Pustejovsky & Tipton 2018',
-      };
+      return clusteredMethod(title, inference);
     case 'wild':
       return {
         title,
-        text: `Wild cluster bootstrap by ${list(inference.by)}, the null imposed, seed ${inference.seed}.`,
-        sources: 'Cameron, Gelbach & Miller 2008',
+        text: `Wild cluster bootstrap-t by ${list(inference.by)} on the scores of the clusters, each tested value imposed before residuals are drawn, t by CR0, seed ${inference.seed}: signs, or six points where clusters are few. A draw that ties with the cells counts as farther out.`,
+        sources: 'Cameron, Gelbach & Miller 2008; Webb 2023',
       };
   }
+}
+
+function modelMethod(title: string, { plan, fit }: Pick<Result, 'plan' | 'fit'>): Method {
+  const estimated = fit.variance.some(({ fixed }) => !fixed);
+  if (fit.errorFreedom !== null && plan.variance.parts.some(({ kind }) => kind === 'matrix'))
+    return {
+      title,
+      text: `Model-based errors; since the given matrix is an estimate itself, t on its freedom${estimated ? ', and on cells less coefficients at most' : ''}.`,
+      sources: 'Särndal, Swensson & Wretman 1992',
+    };
+  if (fit.errorFreedom !== null && !estimated)
+    return {
+      title,
+      text: 'Model-based errors; since the given errors are estimates, each coefficient has Satterthwaite’s freedom.',
+      sources: 'Satterthwaite 1946',
+    };
+  return {
+    title,
+    text: estimated
+      ? 'Model-based errors, with the t distribution on cells less coefficients, since variance parameters were estimated.'
+      : 'Model-based errors with the normal distribution, since nothing in the variance was estimated.',
+    sources: 'Aitken 1935',
+  };
+}
+
+function clusteredMethod(title: string, inference: Extract<Inference, { kind: 'clustered' }>): Method {
+  const { by, alsoBy, correction } = inference;
+  const also = alsoBy === null ? '' : ` and by ${list(alsoBy)}, less what both share`;
+  const says = {
+    CR0: 'whitened residuals as they are; t and F on the clusters less one',
+    CR1: 'whitened residuals times a factor for the number of clusters and cells; t and F on the clusters less one',
+    CR2: 'whitened residuals divided by the symmetric root of what the fit leaves them; t with Satterthwaite’s freedom, joint questions by the approximate Hotelling test',
+    CR3: 'whitened residuals divided by what the fit leaves them; t and F on the clusters less one',
+  } as const;
+  const own =
+    correction === 'CR2'
+      ? 'Bell & McCaffrey 2002; Pustejovsky & Tipton 2018; Tipton & Pustejovsky 2015'
+      : 'Liang & Zeger 1986';
+  return {
+    title,
+    text: `Errors clustered by ${list(by)}${also} (${correction}): ${says[correction]}.`,
+    sources: alsoBy === null ? own : `${own}; Cameron, Gelbach & Miller 2011`,
+  };
 }
 
 const robustMethod: Method = {
   title: 'Robust errors beside',
   text: 'HC3: squared whitened residuals over the square of one less the leverage.',
   sources: 'White 1980; MacKinnon & White 1985; Long & Ervin 2000',
+};
+
+const blocksMethod: Method = {
+  title: 'Robust errors beside',
+  text: 'CR2: whitened residuals summed by the blocks of cells that go together, divided by the symmetric root of what the fit leaves them.',
+  sources: 'Bell & McCaffrey 2002; Pustejovsky & Tipton 2018',
 };
 
 function evidenceMethod({ evidence }: Result): Method {
@@ -222,6 +282,12 @@ const goodnessMethod: Method = {
   title: 'Goodness of fit',
   text: 'The weighted R² compares whitened residuals with whitened distances from the weighted mean; the other is on the unweighted scale.',
   sources: 'Buse 1973; Willett & Singer 1988',
+};
+
+const linkedGoodness: Method = {
+  title: 'Goodness of fit',
+  text: 'The deviance and the sum of squared whitened (Pearson) residuals judge the fit; the R² is that of the shares or rates themselves, unweighted.',
+  sources: 'McCullagh & Nelder 1989; Willett & Singer 1988',
 };
 
 const digitsMethod: Method = {

@@ -231,3 +231,8 @@ export function smallPercent(share: number | null): string {
   const size = Math.abs(share);
   return percent(share, { decimals: size >= 0.1 ? 0 : size >= 0.01 ? 1 : size >= 0.001 ? 2 : 3 });
 }
+
+/** "₁₂": a whole number as a subscript. */
+export function subscript(value: number): string {
+  return [...String(value)].map((digit) => '₀₁₂₃₄₅₆₇₈₉'[Number(digit)]).join('');
+}

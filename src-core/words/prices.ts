@@ -25,7 +25,7 @@ export function priceSentence({ rival, price, ownSe, reverse }: Priced): string 
   const same = error(actualSe) === error(ownSe);
   const start = same
     ? `If the stated structure holds, ${weights} cost nothing that shows: the standard error of ${term} is ${error(ownSe)} either way.`
-    : `If the stated structure holds, ${weights} give ${term} a standard error of ${error(actualSe)} instead of ${error(ownSe)}, a variance ${percent(cost)} larger.`;
+    : `If the stated structure holds, ${weights} give ${term} a standard error of ${error(actualSe)} instead of ${error(ownSe)}${cost === null ? '' : `, a variance ${percent(cost)} larger`}.`;
   const claim = claimedSe === null ? '' : ` Their usual formula reports ${error(claimedSe)} on these data.`;
   return `${start}${claim}${reverseSentence(rival, reverse)}`;
 }

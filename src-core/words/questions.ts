@@ -1,7 +1,8 @@
 import type { Question, Share, Where } from '../protocol/plan';
 import type { Answer, QuestionResult, Result } from '../protocol/result';
-import { estimateInUnit, freedomText, pText, referenceText } from './coefficients';
-import { exact, list, number, pIs, sizeText } from './numbers';
+import { estimateInUnit, freedomText, isFewFreedom, isWithheld, pText, referenceText } from './coefficients';
+import { exact, levelText, list, number, pIs, sizeText } from './numbers';
+import { outcomeName } from './units';
 
 /** The heading of a question: its name, else what it asks. */
 export function questionTitle({ question }: QuestionResult): string {
@@ -50,13 +51,16 @@ function sharesText(shares: readonly Share[]): string {
 
 /** The answer as a sentence. */
 export function answerSentence(result: Result, { question, answer, pHolm }: QuestionResult): string {
-  const holm = pHolm === null ? '' : ` Adjusted by Holm within the family “${question.family ?? ''}”, ${pIs(pHolm)}.`;
+  const withheld =
+    'statistic' in answer ? isFewFreedom(answer.freedom2) : 'p' in answer && isWithheld(answer.reference);
+  const holm =
+    pHolm === null || withheld ? '' : ` Adjusted by Holm within the family “${question.family ?? ''}”, ${pIs(pHolm)}.`;
   if ('statistic' in answer) return `${jointSentence(result, answer)}${holm}`;
   if ('fitted' in answer) return expectSentence(result, question, answer);
   const p =
     answer.p === null
       ? ''
-      : `; error ${number(answer.se, { digits: 3 })}, ${referenceText(answer.reference)}, ${shownP(answer)}`;
+      : `; error ${number(answer.se, { digits: 3 })}, ${answer.reference === null ? '' : `${referenceText(answer.reference)}, `}${shownP(answer)}${result.fit.inference.kind === 'wild' ? ' by the bootstrap' : ''}`;
   const against =
     question.kind === 'combination' && question.equals !== 0
       ? ` The p value is against ${exact(question.equals)}.`
@@ -73,14 +77,34 @@ type JointAnswer = Extract<Answer, { statistic: number | null }>;
 
 function jointSentence({ fit }: Result, { statistic, freedom1, freedom2, p, scale }: JointAnswer): string {
   if (statistic === null) return 'The test is undefined with these cells.';
-  const name = freedom2 === null ? 'chi-square' : 'F';
+  const drawn = fit.inference.kind === 'wild';
+  const name = freedom2 === null && !drawn ? 'chi-square' : 'F';
   const on = freedom2 === null ? freedomText(freedom1) : `${freedomText(freedom1)} and ${freedomText(freedom2)}`;
   const scaled = scale === null || scale === 1 ? '' : `, scaled by ${number(scale, { digits: 3 })}`;
-  const found = `${name} = ${number(statistic, { digits: 3 })} on ${on}${scaled}, ${pIs(p)}`;
-  if (p === null) return `${name} = ${number(statistic, { digits: 3 })} on ${on}; it has no p value.`;
+  const test = `${name} = ${number(statistic, { digits: 3 })} on ${on}${scaled}`;
+  if (p === null) return `${test}; it has no p value.`;
+  if (isFewFreedom(freedom2))
+    return `${test}, p withheld: on fewer than 4 degrees of freedom no verdict can be relied on.`;
+  const found = `${test}, ${pIs(p)}${drawn ? ' by the bootstrap' : ''}`;
   return p < 1 - fit.inference.level
     ? `The data reject that all of them are zero (${found}).`
     : `The data do not contradict that all of them are zero (${found}).`;
+}
+
+/** What an answer on the log or logit scale is on the outcome's own, taken back already; what: of what it is, where several are told. */
+export function ownScaleSentence(
+  result: Result,
+  what: string | null,
+  of: { readonly estimate: number; readonly low: number | null; readonly high: number | null },
+): string {
+  const { plan, fit } = result;
+  const text = (value: number | null): string => number(value, { digits: 3 });
+  const range =
+    of.low === null || of.high === null
+      ? ''
+      : ` (${levelText(fit.inference.level)} interval ${text(of.low)} to ${text(of.high)})`;
+  const start = what === null ? `On the scale of ${outcomeName(plan)} itself that is` : `The ${what} is`;
+  return `${start} ${text(of.estimate)}${range}.`;
 }
 
 type ExpectAnswer = Extract<Answer, { fitted: unknown }>;
@@ -91,23 +115,37 @@ function expectSentence(
   { fitted, newCellTrue, newCellObserved }: ExpectAnswer,
 ): string {
   const start = `The fitted value is ${estimateInUnit(result, fitted)}.`;
-  const between = result.plan.variance.parts.some(({ kind }) => kind === 'between');
+  const between = result.plan.variance.parts.some(({ kind }) => kind === 'between' || kind === 'shared');
   const truth =
     newCellTrue === null
       ? ''
       : between
-        ? ' A new cell’s true value adds what sets cells apart; its observed value adds its sampling error too.'
-        : ' No between part stands, so that a new cell’s true value is taken to be the fitted one; its observed value adds sampling error.';
+        ? ' A new cell’s true value, in groups that are new as well, adds what sets cells and groups apart; its observed value adds its sampling error too.'
+        : ' No between or shared part stands, so that a new cell’s true value is taken to be the fitted one; its observed value adds sampling error.';
   const missing = newCellObserved === null && question.kind === 'expect' ? ` ${newCellMissing(result, question)}` : '';
   return `${start}${truth}${missing}`;
 }
 
-function newCellMissing({ plan }: Result, { size, error }: Extract<Question, { kind: 'expect' }>): string {
-  const given = plan.variance.parts.some(({ kind }) => kind === 'given');
-  if (given && error === null)
-    return 'What would be observed there is not told, since the question states no error for the new cell.';
-  if (!given && size === null)
-    return 'What would be observed there is not told, since the question states no size for the new cell.';
+function newCellMissing({ plan }: Result, { size, error, where }: Extract<Question, { kind: 'expect' }>): string {
+  const lacks = (what: string): string =>
+    `What would be observed there is not told, since the question states no ${what} for the new cell.`;
+  for (const part of plan.variance.parts) {
+    if ((part.kind === 'given' || part.kind === 'matrix') && error === null) return lacks('error');
+    if ((part.kind === 'per-class' || part.kind === 'proxy') && where[part.column] === undefined)
+      return lacks(part.column);
+    if (part.kind === 'log-linear') {
+      const missing = part.terms.find(({ column }) => where[column] === undefined);
+      if (missing !== undefined) return lacks(missing.column);
+    }
+    const { exposure } = plan.roles;
+    if (part.kind === 'counts' && exposure !== null && where[exposure] === undefined) return lacks(exposure);
+    const bySize =
+      part.kind === 'per-size' ||
+      part.kind === 'size-power' ||
+      part.kind === 'binomial' ||
+      (part.kind === 'per-class' && part.perSize);
+    if (bySize && size === null) return lacks('size');
+  }
   return 'What would be observed there is undefined under this structure.';
 }
 

@@ -27,6 +27,8 @@ const whyNot: { readonly [W in WhyNot]: string } = {
   'no-grouping': 'no label column groups cells, and no order or neighbours were given',
   absorbed: 'the model holds the groups’ own indicators, so that the statistic cannot vary',
   'no-convergence': 'the structure without the part could not be fitted',
+  'no-mixture': 'its reference distribution is not known where more than one thing stands at its boundary',
+  correlated: 'it reads residuals cell by cell, and correlated cells have no residuals of their own',
 };
 
 const noDeparture: { readonly [W in NoDeparture]: string } = {
@@ -35,6 +37,7 @@ const noDeparture: { readonly [W in NoDeparture]: string } = {
   'equal-sizes': 'all sizes are equal',
   'out-of-reach': 'none within reach',
   structure: 'not defined under this structure',
+  'too-many-cells': 'not computed for so many cells that go together',
   cancelled: 'not computed',
 };
 
@@ -52,20 +55,34 @@ export function pairedBy({ test, detail }: Evidence): string[] | null {
   return typeof order === 'string' ? [...by, `${order} (adjacent)`] : by;
 }
 
+/** A statistic below this is 0 but for rounding. */
+const ROUNDING = 1e-12;
+
 /** "chi-square 1.3 on 1, p = 0.250": what a test found. */
 export function foundText(one: Evidence): string {
   const { test, statistic, p } = one;
-  const parts = [`${signOf(one)} ${number(statistic, { digits: 3 })}${onText(one)}`];
+  const value = statistic !== null && Math.abs(statistic) < ROUNDING ? 0 : statistic;
+  const parts = [`${signOf(one)} ${number(value, { digits: 3 })}${onText(one)}`];
   if (test === 'dependence' && typeof one.detail['expectation'] === 'number')
     parts.push(`expected ${number(one.detail['expectation'], { digits: 2 })}`);
   if (p !== null) parts.push(pIs(p));
   return parts.join(', ');
 }
 
-function onText({ test, freedom1, freedom2 }: Evidence): string {
+function onText({ test, freedom1, freedom2, detail }: Evidence): string {
   const freedom = [freedom1, freedom2].filter((one) => one !== null).map(freedomText);
   if (freedom.length === 0) return '';
-  return test === 'boundary-likelihood-ratio' ? ', half a chi-square on 1' : ` on ${freedom.join(' and ')}`;
+  return test === 'boundary-likelihood-ratio' ? boundaryReference(detail) : ` on ${freedom.join(' and ')}`;
+}
+
+/** What a likelihood ratio at a boundary was compared with. */
+function boundaryReference({ weights, replications }: Evidence['detail']): string {
+  if (typeof replications === 'number') return `, against ${count(replications)} draws without it`;
+  const [zero, one, two] = Array.isArray(weights) ? weights.filter((weight) => typeof weight === 'number') : [];
+  if (zero === undefined || one === undefined) return '';
+  if (!two) return ', half a chi-square on 1';
+  const share = (weight: number): string => percent(weight, { decimals: 0 });
+  return `, a mixture of ${share(zero)} nought, ${share(one)} chi-square on 1 and ${share(two)} chi-square on 2`;
 }
 
 function signOf({ test, freedom2 }: Evidence): string {
@@ -123,10 +140,11 @@ function verdict({ test, reading, detail }: Evidence, { fit }: Result): string {
 }
 
 function departureSentence(
-  { smallestDeparture: found, detail }: Evidence,
+  { test, smallestDeparture: found, detail }: Evidence,
   result: Result,
   term: string | null,
 ): string {
+  if (isFittedAway(test, result)) return FITTED_AWAY;
   const cells = count(result.cells.length);
   if (found === null) {
     const why = detail['departureWhy'];
@@ -136,6 +154,20 @@ function departureSentence(
   }
   const error = errorUnder(found, result, term);
   return ` With ${cells} cells it would have had an 80 % chance of noticing a departure only if ${departurePhrase(found)}${error}.`;
+}
+
+const FITTED_AWAY =
+  ' The structure estimates how variance follows size, which brings this score to nought or near it whatever the data: it is no evidence.';
+
+/** True of a score on log size where the exponent of size, or the coefficient of its logarithm, is itself estimated. */
+function isFittedAway(test: Evidence['test'], { plan }: Result): boolean {
+  if (test !== 'size-score' && test !== 'size-score-studentised') return false;
+  const { roles, variance } = plan;
+  return variance.parts.some((part) => {
+    if (part.kind === 'size-power') return part.exponent === 'estimate';
+    if (part.kind !== 'log-linear' || roles.designEffect !== null) return false;
+    return part.terms.some((term) => 'transform' in term && term.transform === 'log' && term.column === roles.size);
+  });
 }
 
 function departurePhrase({ measure, size }: SmallestDeparture): string {
@@ -192,12 +224,14 @@ export function batterySentence(evidence: readonly Evidence[], { fit }: Pick<Res
     test === 'boundary-likelihood-ratio' || (test === 'heterogeneity' && between);
   const against = spoken.filter((one) => !forParts(one));
   const rejected = against.filter(({ reading }) => reading === 'rejects').length;
-  const start = `${numberWord(spoken.length)} of ${count(evidence.length)} tests have a say under this structure.`;
+  const start = `${numberWord(spoken.length)} of ${count(evidence.length)} tests ${spoken.length === 1 ? 'has' : 'have'} a say under this structure.`;
   if (against.length === 0) return start;
   const found = rejected === 0 ? 'none does' : rejected === 1 ? 'one does' : `${count(rejected)} do`;
   const parts = spoken.length - against.length;
   const other =
     parts === 0 ? '' : ` ${parts === 1 ? 'One asks' : `${numberWord(parts)} ask`} whether a part is needed at all.`;
+  if (against.length === 1)
+    return `${start}${other} ${other === '' ? 'It could contradict' : 'The other could contradict'} it, or what it assumes, and ${rejected === 0 ? 'does not' : 'does'}; read at the 5 % level, it would do so by chance one time in twenty.`;
   return `${start} Of ${count(against.length)} that could contradict it, or what it assumes, ${found}.${other} Each was read at the 5 % level by itself: of ${count(against.length)} true hypotheses about ${number(0.05 * against.length, { digits: 1 })} would be rejected by chance.`;
 }
 

@@ -34,6 +34,18 @@ const reasons: ReadonlyMap<string, string> = new Map([
     'Counts on a log scale are fitted by the method "full" alone. State it, or leave "estimate" out.',
   ],
   [
+    'outcomeScale+variance',
+    'Counts on a log scale are fitted by maximum likelihood, with nothing beside the part "counts" and no correlation. Choose the scale "identity", or leave the other parts out.',
+  ],
+  [
+    'variance+outcomeScale+estimate',
+    'Maximum likelihood with a link has one part, without a correlation. Choose the method "restricted", which takes empirical logits or logs, or leave the other parts out.',
+  ],
+  [
+    'target+estimate',
+    'Maximum likelihood with a link has weights of its own. Choose the target "structure", or another method.',
+  ],
+  [
     'variance+estimate',
     'Least squares settles one scale of the whole structure, and moments one between part beside given errors or a matrix. Choose the method "restricted", or set the other parameters in "fixed".',
   ],

@@ -1,3 +1,4 @@
+import { isLinked } from '../protocol/linked';
 import type { Result } from '../protocol/result';
 import { usedText } from './data';
 import { count, list, plural, quoted } from './numbers';
@@ -48,9 +49,9 @@ export function footRight(edition: { readonly number: number } | null, version: 
 export const questionLead = (question: string): string => `Question. ${question}`;
 
 /** Opens the section on rivals. */
-export function besideLead({ beside }: Pick<Result, 'beside'>): string {
+export function besideLead({ plan, beside }: Pick<Result, 'plan' | 'beside'>): string {
   const names = beside.map(({ variance }) => quoted(structureName(variance)));
-  return `The same terms were fitted to the same cells under ${plural(beside.length, 'other structure')}: ${list(names)}. Each has its own weights, and variance parameters of its own where it has any.`;
+  return `The same terms were fitted to the same cells under ${plural(beside.length, 'other structure')}: ${list(names)}. Each has its own weights, and variance parameters of its own where it has any.${isLinked(plan) ? ' They weight the working response of the stated fit, on which no other likelihood can be compared with that of the counts.' : ''}`;
 }
 
 export const noRivals =
@@ -95,6 +96,9 @@ export function testsCounted(of: { readonly passed: number; readonly all: number
 export const logScaleRemark =
   'Coefficients are differences of natural logarithms: a difference of 0.1 is about 10.5 % more, one of −0.1 about 9.5 % less.';
 
+export const logitScaleRemark =
+  'Coefficients are differences of logits, the logarithms of odds: a difference of 0.1 makes odds about 10.5 % larger; a share near one half moves by about a quarter of the difference.';
+
 export const productRemark =
   'Terms that share a column are to be read together: one cannot move while the others are held.';
 
@@ -108,3 +112,6 @@ export const sharedTests = (by: readonly string[]): string =>
   `What was not tested: dependence other than ${list(by)}, and bias of the outcome itself.`;
 
 export const untestedDependence = 'What was not tested: whether cells move together, and bias of the outcome itself.';
+
+export const untestedBeyondStated =
+  'What was not tested: whether cells go together in other ways than the structure states, and bias of the outcome itself.';

@@ -1,11 +1,4 @@
-import {
-  isOffered,
-  isOfferedCorrelation,
-  isOfferedInference,
-  isOfferedKey,
-  type LaterKey,
-} from '../protocol/offered-parts';
-import type { AddedHalf, Correlation, Inference, Limit, PartKind, SimpleTerm } from '../protocol/plan';
+import type { AddedHalf, Correlation, Limit, SimpleTerm } from '../protocol/plan';
 import type { Problem } from '../protocol/problems';
 import { termName } from '../protocol/term-names';
 import { count, exact, list } from './numbers';
@@ -15,7 +8,6 @@ import { sentence } from './problems';
 
 export const controlTexts = {
   keep: 'Keep',
-  later: 'This version does not fit it yet: it can be stated, and the fit refuses it by name.',
   laterShort: 'this version does not fit it yet',
   columnsNeeded: 'Choose at least one column.',
   chooseFile: 'Choose a file …',
@@ -116,27 +108,6 @@ export const controlTexts = {
   asMatrix: 'As covariance matrix of the cells',
   asNeighbours: 'As list of neighbours',
 } as const;
-
-/** What a choice says of itself where this version does not fit it; nothing where it does. */
-export function laterSays(isThere: boolean): string | undefined {
-  return isThere ? undefined : controlTexts.later;
-}
-
-export function partSays(kind: PartKind, says: string): string {
-  return isOffered(kind) ? says : `${says} ${controlTexts.later}`;
-}
-
-export function correlationChoiceSays(kind: Correlation['kind'], says: string): string {
-  return isOfferedCorrelation(kind) ? says : `${says} ${controlTexts.later}`;
-}
-
-export function inferenceSays(kind: Inference['kind']): string | undefined {
-  return laterSays(isOfferedInference(kind));
-}
-
-export function keySays(key: LaterKey, says: string): string {
-  return isOfferedKey(key) ? says : `${says} ${controlTexts.later}`;
-}
 
 /** What the fit refused at a phrase: in short where this version lacks it, else the whole sentence. */
 export function refusalText(problem: Problem): string {

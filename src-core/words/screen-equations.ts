@@ -1,11 +1,11 @@
-import type { Part, Plan } from '../protocol/plan';
+import type { Correlation, Part, Plan } from '../protocol/plan';
 import { interceptName } from '../protocol/term-names';
 import { exact } from './numbers';
 
 /** Mathematics as a tree of MathML elements: a leaf has text, all others have children. */
 export type MathNode =
   | { readonly tag: 'mi' | 'mn' | 'mo' | 'mtext'; readonly text: string }
-  | { readonly tag: 'mrow' | 'msub' | 'msup' | 'mfrac'; readonly children: readonly MathNode[] };
+  | { readonly tag: 'mrow' | 'msub' | 'msup' | 'msqrt' | 'mfrac'; readonly children: readonly MathNode[] };
 
 const mi = (text: string): MathNode => ({ tag: 'mi', text });
 const mo = (text: string): MathNode => ({ tag: 'mo', text });
@@ -39,7 +39,7 @@ function ownMath(part: Part, size: MathNode): MathNode {
       return over(phi, size);
     case 'given':
     case 'matrix': {
-      const errors = part.kind === 'given' ? squared(sub(mi('s'), cell)) : mi('S');
+      const errors = part.kind === 'given' ? squared(sub(mi('s'), cell)) : sub(mi('S'), row(cell, cell));
       return part.scale === 'free' ? row(phi, errors) : errors;
     }
     case 'size-power':
@@ -62,6 +62,52 @@ function ownMath(part: Part, size: MathNode): MathNode {
     case 'shared':
       return sub(squared(mi('ω')), mtext(part.by.join(' × ')));
   }
+}
+
+/** Left of the sum: the covariance of the errors of two cells. */
+const covarianceHead: MathNode = row(
+  mi('Cov'),
+  mo('('),
+  sub(mi('u'), cell),
+  mo(','),
+  sub(mi('u'), mi('h')),
+  mo(')'),
+  mo('='),
+);
+
+/** The covariance of two cells as a sum over the parts that tie them; null where cells are independent. */
+export function covarianceMath(parts: readonly Part[]): readonly MathNode[] | null {
+  const ties = parts.flatMap((part) => tieMath(part) ?? []);
+  if (ties.length === 0) return null;
+  return [covarianceHead, ...ties.flatMap((tie, i) => (i === 0 ? [tie] : [mo('+'), tie]))];
+}
+
+function tieMath(part: Part): MathNode | null {
+  switch (part.kind) {
+    case 'matrix':
+      return row(...(part.scale === 'free' ? [mi('φ')] : []), sub(mi('S'), row(cell, mi('h'))));
+    case 'shared':
+      return row(squared(mi('ω')), sameMath(part.by));
+    default:
+      return part.correlation === null ? null : correlatedMath(part, part.correlation);
+  }
+}
+
+function correlatedMath({ kind }: Part, correlation: Correlation): MathNode {
+  const rho =
+    correlation.kind === 'exchangeable'
+      ? mi('ρ')
+      : sup(mi('ρ'), row(mo('|'), mi('Δ'), mtext(correlation.order), mo('|')));
+  const variances: MathNode =
+    kind === 'between'
+      ? squared(mi('τ'))
+      : { tag: 'msqrt', children: [row(sub(mi('v'), cell), sub(mi('v'), mi('h')))] };
+  return row(rho, variances, sameMath(correlation.by));
+}
+
+/** In brackets what two cells must have in common; nothing where that is nothing. */
+function sameMath(by: readonly string[]): MathNode {
+  return by.length === 0 ? row() : mtext(`\u00a0[same ${by.join(' × ')}]`);
 }
 
 function exponent(value: number | 'estimate'): MathNode {

@@ -1,7 +1,7 @@
 import type { MarginNote } from '../protocol/document';
 import type { Result } from '../protocol/result';
 import { count, number } from './numbers';
-import { responseName } from './units';
+import { cellValueName } from './units';
 
 /** What stands in and under the figures that only the screens draw. */
 export const plotWords = {
@@ -12,9 +12,9 @@ export const plotWords = {
     alt: (structures: readonly string[]): string => `Lines of weight against size under ${structures.join('; ')}.`,
   },
   fitted: {
-    xName: ({ plan }: Pick<Result, 'plan'>): string => `fitted ${responseName(plan)}`,
+    xName: ({ plan }: Pick<Result, 'plan'>): string => `fitted ${cellValueName(plan)}`,
     whitenedName: 'whitened residual',
-    rawName: ({ plan }: Pick<Result, 'plan'>): string => `residual of ${responseName(plan)}`,
+    rawName: ({ plan }: Pick<Result, 'plan'>): string => `residual of ${cellValueName(plan)}`,
     caption: (raw: boolean): string =>
       raw
         ? 'Raw residuals against fitted values: small cells scatter more widely, as they should.'

@@ -4,6 +4,7 @@ import type { Part, Plan, Variance } from '../protocol/plan';
 import type { Result } from '../protocol/result';
 import { termName } from '../protocol/term-names';
 import { list } from './numbers';
+import { parameterText } from './parameter-text';
 import { outcomeNoun, varianceSentence } from './statement';
 
 /** A piece of the statement. governs: which choices it opens; null for the words between. */
@@ -19,22 +20,23 @@ export function statementPieces(plan: Plan | DraftPlan, result: Result | null): 
   const whole = { ...plan, variance } as Plan;
   const sentence = result === null ? unfittedSentence(whole) : varianceSentence({ ...result, plan: whole });
   const start = `The error variance of each ${outcomeNoun(whole)} is `;
-  const [sampling = '', ...beyond] = sentence.slice(start.length).replace(/\.$/, '').split(', plus ');
+  const [sampling = '', ...more] = sentence.slice(start.length).replace(/\.$/, '').split(', plus ');
+  const kinds = variance.parts.filter((part) => !isSampling(part)).map(({ kind }) => kind);
   return [
     { text: start, governs: null },
     { text: sampling, governs: 'sampling' },
-    ...beyond.flatMap((text): StatementPiece[] => [
+    ...more.flatMap((text, i): StatementPiece[] => [
       { text: ', plus ', governs: null },
-      { text, governs: 'beyond' },
+      { text, governs: kinds[i] === 'shared' ? 'together' : 'beyond' },
     ]),
-    ...(beyond.length === 0
-      ? ([
+    ...(kinds.includes('between')
+      ? []
+      : ([
           { text: ', and ', governs: null },
-          { text: 'nothing beyond it', governs: 'beyond' },
-        ] as const)
-      : []),
+          { text: more.length === 0 ? 'nothing beyond it' : 'nothing of each cell’s own', governs: 'beyond' },
+        ] as const)),
     { text: '. Cells are taken as ', governs: null },
-    { text: togetherText(variance), governs: 'together' },
+    { text: togetherText(variance, result), governs: 'together' },
     { text: '.', governs: null },
   ];
 }
@@ -45,11 +47,25 @@ function unstatedText(plan: Plan | DraftPlan): string {
   return `How the error variance of each ${outcomeNoun(plan as Plan)} arises is not stated yet; nothing is fitted before it is.`;
 }
 
-function togetherText({ parts }: Variance): string {
-  const shared = parts.filter((part) => part.kind === 'shared').map((part) => part.by.join(' and '));
-  const correlated = parts.some((part) => 'correlation' in part && part.correlation !== null);
-  if (shared.length > 0) return `sharing what ${shared.join(', ')} have in common`;
-  return correlated || parts.some((part) => part.kind === 'matrix') ? 'correlated' : 'independent of one another';
+/** How cells go together, every part that ties them by name; result: where its correlations are known from. */
+function togetherText({ parts }: Variance, result: Result | null): string {
+  const phrases = parts.flatMap((part) => tieText(part, parts, result) ?? []);
+  return phrases.length === 0 ? 'independent of one another' : list(phrases);
+}
+
+function tieText(part: Part, parts: readonly Part[], result: Result | null): string | null {
+  if (part.kind === 'shared') return `sharing a shock with those of the same ${list(part.by)}`;
+  if (part.kind === 'matrix') return `correlated as ${part.file} tells`;
+  const { correlation } = part;
+  if (correlation === null) return null;
+  const found = result?.fit.variance.find(({ name }) => name === `rho: ${part.kind}`);
+  const rho = result === null ? 'ρ' : parameterText(found, result.fit.inference.level);
+  const own =
+    parts.length === 1 ? '' : part.kind === 'between' ? ' in what sets them apart' : ' in their sampling errors';
+  const whose = correlation.by.length === 0 ? '' : ` with those of the same ${list(correlation.by)}`;
+  return correlation.kind === 'exchangeable'
+    ? `correlated${own}${whose}, each pair by ${rho}`
+    : `correlated${own}${whose} along ${correlation.order}, by ${rho} at a distance of 1`;
 }
 
 function unfittedSentence(plan: Plan): string {

@@ -1,7 +1,7 @@
 import type { AlsoChanged } from '../protocol/edit-structure';
 import type { Freedom, Part, PartKind, Roles } from '../protocol/plan';
 import type { Beyond, Origin, ProposalReason, Together } from '../protocol/proposal-structure';
-import { exact, list, quoted } from './numbers';
+import { exact, list } from './numbers';
 
 /** Sentences of the screen on which a variance structure is stated. */
 
@@ -104,12 +104,14 @@ const reasonSentences: { readonly [R in ProposalReason]: string } = {
     'A mean of n answers has the variance of one answer divided by n; one answer’s variance is estimated here.',
   'error-given': 'Each cell’s own error gives its sampling variance; nothing of it is estimated here.',
   'error-to-a-factor': 'The given errors tell cells apart; a common factor on them is estimated here.',
-  'share-wished': 'The sampling variance of a share depends on the share itself: μ (1 − μ) / n.',
-  'share-by-size':
-    'This version has no part for it yet. Dividing one variance by n comes near where shares are much alike, between a fifth and four fifths.',
-  'count-wished': 'The sampling variance of a rate grows with the rate itself: μ over the exposure.',
-  'count-by-size':
-    'This version has no part for it yet. Dividing one variance by size or exposure comes near where rates are much alike.',
+  'share-of-size':
+    'The sampling variance of a share follows from the share itself, μ (1 − μ) / n; a common factor on it is estimated here.',
+  'share-not-stated':
+    'No column is stated to be a share, or the count behind one; until one is, one variance is divided by the size, or the exposure.',
+  'count-over-exposure':
+    'The sampling variance of a rate grows with the rate itself, μ over the exposure; a common factor on it is estimated here.',
+  'count-not-stated':
+    'A count and its exposure are not both stated; until they are, one variance is divided by the size, or the exposure, where there is one.',
   'complete-constant': 'Where nothing was sampled no cell is more exact than another: the same variance for all.',
   'unknown-with-size':
     'The data are asked how fast variance falls with size; a power of 0 is not at all, of 1 is sampling.',
@@ -124,37 +126,26 @@ const reasonSentences: { readonly [R in ProposalReason]: string } = {
     'A constant variance holds what lies between cells already: a further part could not be told from it.',
   'between-with-exponent':
     'With the power of size estimated a part between cells could hardly be told from it, and is left out.',
+  'between-with-link':
+    'A rate on the log scale is fitted by the likelihood of its counts, which has this part alone; on the scale as it stands it could have one between cells.',
   independent: 'Cells are taken as independent; that is tested by every label column that groups them.',
   'together-left-open':
     'Cells are taken as independent for now; dependence is tested by every label column that groups them.',
-  'group-wished': 'A shock shared by the cells of a group would stand as a part of its own.',
-  'order-wished': 'Neighbours in order would be correlated, the less so the further apart they stand.',
+  'together-with-link':
+    'Maximum likelihood of counts with a logarithm takes cells as independent; dependence is tested by every label column that groups them.',
+  'group-shared': 'A shock ω² that all cells of a group share; if the data do not need it, it comes out at 0.',
+  'group-in-sampling':
+    'Nothing lies beyond sampling, so it is the sampling errors of a group that go together, each pair by the same ρ.',
+  'order-between':
+    'What sets cells apart is correlated between neighbours, by ρ at a distance of 1 and the less the farther they stand.',
+  'order-in-sampling':
+    'Nothing lies beyond sampling, so it is the sampling errors of neighbours that go together, the less the farther they stand.',
 };
 
 /** Why a part stands in a proposal, or does not. */
 export function proposalReason(reason: ProposalReason): string {
   return reasonSentences[reason];
 }
-
-/** What the wish holds that this version does not fit. */
-export function lackingSentence(lacking: readonly string[]): string {
-  return `Your answers ask for ${list(lacking.map((kind) => quoted(laterName(kind))))}; this version does not fit ${lacking.length === 1 ? 'it' : 'them'} and says so instead of leaving it out in silence. What follows is the nearest that it can fit: let the reason on record say what is missing.`;
-}
-
-function laterName(kind: string): string {
-  return (laterNames as { readonly [kind: string]: string | undefined })[kind] ?? kind;
-}
-
-const laterNames = {
-  exchangeable: 'equal correlation inside groups',
-  serial: 'serial correlation',
-  shared: 'a shock shared by a group',
-  binomial: 'the variance of a share',
-  counts: 'the variance of a count',
-  'log-linear': 'a variance log-linear in columns',
-  'per-class': 'a variance for each class',
-  matrix: 'a full covariance matrix',
-} as const;
 
 /** A kind of part, in the words of a choice. */
 export const partNames: { readonly [K in PartKind]: string } = {

@@ -1,7 +1,11 @@
+import { isLinked, isOfCounts } from '../protocol/linked';
 import type { Part, Plan } from '../protocol/plan';
 import type { CellResult, Result, VarianceParameter } from '../protocol/result';
 import { freedomText } from './coefficients';
-import { decimalsBy, exact, levelText, list, number, numberWord, percent, rangeText, sizeText } from './numbers';
+import { classesPhrase, logLinearPhrase } from './estimated-variances';
+import { linkedSentence } from './linked-cells';
+import { decimalsBy, exact, levelText, list, number, numberWord, percent, sizeText } from './numbers';
+import { parameterText } from './parameter-text';
 import { methodPhrase } from './rules';
 import { structureName } from './structures';
 import { cellName, varianceUnit } from './units';
@@ -10,23 +14,6 @@ import { cellName, varianceUnit } from './units';
 export function outcomeNoun({ roles }: Plan): 'mean' | 'share' | 'rate' | 'proportion' {
   if (roles.count !== null) return roles.exposure === null ? 'proportion' : 'rate';
   return roles.outcomeUnit === 'number' ? 'mean' : 'share';
-}
-
-/** An estimated variance parameter inside a sentence: "0.70 (95 % interval 0.15 to 1.96)". */
-export function parameterText(one: VarianceParameter | undefined, level: number): string {
-  if (one === undefined || one.estimate === null) return 'a value that these cells leave undefined';
-  if (one.fixed) return `${exact(one.estimate)}, set by the plan`;
-  const width = one.low === null || one.high === null ? null : (one.high - one.low) / 4;
-  // Two digits of the estimate are told even where its interval is wide.
-  const decimals = Math.min(
-    decimalsBy(width, one.estimate) + 2,
-    Math.max(decimalsBy(width, one.estimate), decimalsBy(one.estimate)),
-  );
-  const shown = number(one.estimate, width === null ? { digits: 3 } : { decimals });
-  if (one.atBoundary)
-    return `${one.estimate === 0 ? '0' : shown} (at its boundary${one.high === null ? '' : `; up to ${number(one.high, { digits: 2 })} by the ${levelText(level)} interval`})`;
-  if (width === null) return shown;
-  return `${shown} (${levelText(level)} interval ${rangeText(one.low, one.high, decimals)})`;
 }
 
 type Spoken = Pick<Result, 'plan' | 'fit' | 'evidence'>;
@@ -41,7 +28,7 @@ export function varianceSentence({ plan, fit }: Spoken): string {
     );
   const sampling = plan.variance.parts.filter((part) => part.kind !== 'between' && part.kind !== 'shared');
   const others = plan.variance.parts.filter((part) => part.kind === 'between' || part.kind === 'shared');
-  const start = `The error variance of each ${outcomeNoun(plan)} is ${sampling.map((part) => samplingPhrase(part, plan, value)).join(' and ')}`;
+  const start = `The error variance of each ${outcomeNoun(plan)} is ${sampling.map((part) => samplingPhrase(part, { plan, variance: fit.variance, value })).join(' and ')}`;
   const more = others.map((part) =>
     part.kind === 'shared'
       ? `${value(`omega2: ${part.by.join(' × ')}`)} shared by all cells of the same ${part.by.join(' and ')}`
@@ -50,7 +37,18 @@ export function varianceSentence({ plan, fit }: Spoken): string {
   return `${[start, ...more.map((phrase) => `plus ${phrase}`)].join(', ')}.`;
 }
 
-function samplingPhrase(part: Part, plan: Plan, value: (name: string) => string): string {
+function samplingPhrase(
+  part: Part,
+  {
+    plan,
+    variance,
+    value,
+  }: {
+    readonly plan: Plan;
+    readonly variance: readonly VarianceParameter[];
+    readonly value: (name: string) => string;
+  },
+): string {
   const size = sizePhrase(plan);
   switch (part.kind) {
     case 'constant':
@@ -65,17 +63,46 @@ function samplingPhrase(part: Part, plan: Plan, value: (name: string) => string)
       return `${value('phi')} divided by ${size} to the power ${part.exponent === 'estimate' ? value('delta') : exact(part.exponent)}`;
     case 'proxy':
       return `${value('phi')} times ${part.column} to the power ${part.exponent === 'estimate' ? value('delta') : exact(part.exponent)}`;
+    case 'binomial':
+    case 'counts':
+      return countedPhrase(part, plan, value);
+    case 'matrix':
+      return `its entry on the diagonal of the supplied matrix “${part.file}”${part.scale === 'free' ? `, times a factor of ${value('phi')} that these data settle` : ''}`;
+    case 'per-class':
+      return classesPhrase(part, { variance, size, value });
+    case 'log-linear':
+      return logLinearPhrase(part);
     default:
       return `that of its “${part.kind}” part`;
   }
+}
+
+function countedPhrase(
+  part: Extract<Part, { kind: 'binomial' | 'counts' }>,
+  plan: Plan,
+  value: (name: string) => string,
+): string {
+  const from = plan.outcomeScale !== 'identity' && !isLinked(plan) ? 'observed' : 'fitted';
+  const on = from === 'observed' ? `, taken over to the ${plan.outcomeScale} scale` : '';
+  const own =
+    part.kind === 'counts'
+      ? `that of a count, which is its own mean: the ${from} rate over the exposure${on}`
+      : `that of a share of ${sizePhrase(plan).replace(' behind it', '')}, at its ${from} value${on}`;
+  return part.scale === 'free' ? `${own}, times a factor of ${value('phi')} that these data settle` : own;
 }
 
 function sizePhrase({ roles }: Plan): string {
   return roles.designEffect === null ? 'the number of respondents behind it' : 'the effective size behind it';
 }
 
+const onScalePhrases: { readonly [S in Plan['outcomeScale']]: string } = {
+  identity: '',
+  log: ', taken over to the log scale by dividing by the value itself',
+  logit: ', taken over to the logit scale by dividing by p (1 − p) of the value itself',
+};
+
 function givenPhrase({ roles, outcomeScale }: Plan): string {
-  const onScale = outcomeScale === 'log' ? ', taken over to the log scale by dividing by the value itself' : '';
+  const onScale = onScalePhrases[outcomeScale];
   switch (roles.errorKind) {
     case 'se':
       return `the square of its supplied standard error${onScale}`;
@@ -98,23 +125,52 @@ export function methodSentence({ plan, fit }: Spoken): string {
     : freedom === null
       ? ' The supplied errors are taken as exact.'
       : ` The supplied errors are estimates themselves, on about ${freedomText(freedom.median)} degrees of freedom.`;
+  const counted = countedMethod(plan);
+  if (counted !== null) return counted;
   if (free.some(({ estimate }) => estimate === null))
     return `What is unknown in it cannot be estimated from these cells.${errors}`;
   if (free.length === 0) return `Nothing in it was estimated here.${errors}`;
   return `What is unknown in it was estimated here by ${methodPhrase(fit.estimate)}.${errors}`;
 }
 
-/** Whether cells are independent, and how far that was tested. */
-export function independenceSentence({ evidence }: Spoken): string {
+/** How a fit whose variances follow from its means was found; null for any other. */
+function countedMethod(plan: Plan): string | null {
+  if (!isOfCounts(plan)) return null;
+  const alone = plan.variance.parts.length === 1;
+  const free = plan.variance.parts.some((part) => 'scale' in part && part.scale === 'free');
+  const phi = free ? ' The factor φ is the sum of squared whitened residuals over the residual freedom.' : '';
+  if (isLinked(plan))
+    return `The coefficients were found by maximum likelihood of the counts, with the ${plan.outcomeScale} of the mean on the terms; ${plan.roles.exposure === null ? 'cells of none and all' : 'cells without a count'} are taken as they are.${phi}`;
+  if (plan.outcomeScale !== 'identity')
+    return `The coefficients are those of minimum chi-square: the ${plan.outcomeScale} of each observed value, weighted by what its own size and value say${alone ? '' : `, with what else is unknown estimated by ${methodPhrase(plan.estimate)}`}.${alone ? phi : ''}`;
+  if (plan.estimate.method === 'two-step')
+    return 'The variances follow from the means of unweighted least squares; then one weighted fit, without iteration.';
+  return `The variances follow from the fitted means, and these from the variances: both were iterated until nothing changed${alone ? '' : `, and what else is unknown estimated by ${methodPhrase(plan.estimate)} in every round`}.${alone ? phi : ''}`;
+}
+
+/** How cells go together, or that they are taken as independent and how far that was tested. */
+export function independenceSentence({ plan, fit, evidence }: Spoken): string {
+  const linked = linkedSentence({ plan, fit });
+  if (linked !== null) return linked;
   const tests = evidence.filter(({ test }) => test === 'dependence');
   const by = (reading: string): string[] => tests.filter((one) => one.reading === reading).map(pairingPhrase);
   const against = by('rejects');
   const quiet = by('does-not-contradict');
-  const start = 'Cells are taken as independent';
+  const grouped = groupedErrors(plan);
+  const start = grouped === null ? 'Cells are taken as independent' : 'The weights take cells as independent';
+  const errors = grouped === null ? '' : ` The errors do not: they let ${grouped} go together in any way.`;
   if (against.length > 0)
-    return `${start}, and the data contradict that: residuals go together ${list(against)}${quiet.length > 0 ? `, though not detectably ${list(quiet)}` : ''}.`;
-  if (quiet.length > 0) return `${start}; that was tested ${list(quiet)} and not contradicted.`;
-  return `${start}; that was not tested.`;
+    return `${start}, and the data contradict that: residuals go together ${list(against)}${quiet.length > 0 ? `, though not detectably ${list(quiet)}` : ''}.${errors}`;
+  if (quiet.length > 0) return `${start}; that was tested ${list(quiet)} and not contradicted.${errors}`;
+  return `${start}; that was not tested.${errors}`;
+}
+
+/** Cells whose residuals are summed for the errors: "those of the same firm"; null where each cell stands alone. */
+function groupedErrors({ inference }: Plan): string | null {
+  if (inference.kind !== 'clustered' && inference.kind !== 'wild') return null;
+  const also = inference.kind === 'clustered' ? inference.alsoBy : null;
+  const same = (by: readonly string[]): string => `of the same ${list(by)}`;
+  return `those ${same(inference.by)}${also === null ? '' : `, or ${same(also)},`}`;
 }
 
 function pairingPhrase({ detail }: Result['evidence'][number]): string {

@@ -76,7 +76,8 @@ const signs: { readonly [name: string]: string } = {
 
 /** What a variance parameter is, in words. */
 export function parameterMeaning(name: string, { parts }: Variance): string {
-  const [start = '', of] = name.split(': ');
+  const [start = '', ...rest] = name.split(': ');
+  const of = rest.length === 0 ? undefined : rest.join(': ');
   const sampling = parts.find(({ kind }) => kind !== 'between' && kind !== 'shared');
   switch (start) {
     case 'phi':
@@ -124,4 +125,9 @@ export function structureFromKinds(what: string): string {
     return part.replace(/^per-size$/, 'per size');
   });
   return [parts.join(' + '), ...fixed].join(', ');
+}
+
+/** Whether some part of a structure lets cells go together. */
+export function tiesCells({ parts }: Pick<Variance, 'parts'>): boolean {
+  return parts.some((part) => part.kind === 'shared' || part.kind === 'matrix' || part.correlation !== null);
 }

@@ -3,6 +3,7 @@ import { interceptName } from '../protocol/term-names';
 import { changePhrase, crossingPhrase } from './changes';
 import { estimateInUnit, pText, referenceText, withheldText } from './coefficients';
 import { count, decimalsBy, exact, levelText, list, number, numberWord, plural, rangeText } from './numbers';
+import { tiesCells } from './structures';
 import { outcomeName, stepOf } from './units';
 
 /** The answer for one coefficient, in its units. */
@@ -25,10 +26,13 @@ function capital(text: string): string {
 /** Where the interval stands: against zero, and against the smallest difference that matters. */
 export function standingSentence({ plan, fit }: Result, own: Coefficient): string {
   const { low, high, estimate } = own;
-  if (low === null || high === null)
-    return fit.residualFreedom <= 0
-      ? 'It has no interval: there are as many coefficients as cells, and no residual to judge by.'
-      : 'It has no interval: its error is undefined here.';
+  if (low === null || high === null) {
+    if (fit.residualFreedom <= 0)
+      return 'It has no interval: there are as many coefficients as cells, and no residual to judge by.';
+    return own.se === null
+      ? 'It has no interval: its error is undefined here.'
+      : `It has no interval${plan.inference.kind === 'wild' ? ': the wild bootstrap tells p values alone' : ''}.`;
+  }
   const matters = plan.matters[own.term];
   const zero = low > 0 || high < 0 ? 'The interval excludes zero' : 'The interval takes zero in';
   if (matters === undefined || !(matters > 0)) return `${zero}; the plan states no smallest difference that matters.`;
@@ -52,10 +56,10 @@ export function uncertaintySentence(result: Result, own: Coefficient): string | 
       : shown.startsWith('<') || shown.startsWith('>')
         ? `, p ${shown}`
         : `, p = ${shown}`;
-  const start = `Its standard error is ${number(own.se, { decimals })} (${inferenceName(result)}, ${referenceText(own.reference)}${p})`;
+  const start = `Its standard error is ${number(own.se, { decimals })} (${inferenceName(result)}${own.reference === null ? '' : `, ${referenceText(own.reference)}`}${p})`;
   const robust = result.robustBeside?.find((one) => one.term === own.term);
   if (result.fit.inference.kind !== 'model' || robust?.se == null) return `${start}.`;
-  return `${start}; the robust one (HC3) is ${number(robust.se, { decimals })}.`;
+  return `${start}; the robust one (${tiesCells(result.plan.variance) ? 'CR2' : 'HC3'}) is ${number(robust.se, { decimals })}.`;
 }
 
 /** The kind of inference, as it stands beside an error. */
@@ -104,7 +108,7 @@ const kinds: readonly [Overturn['change']['kind'], (number: number) => string][]
   ['exponent', (n) => plural(n, 'size exponent')],
   ['cell', (n) => (n === 1 ? 'the cell' : `the ${count(n)} cells`)],
   ['block', (n) => (n === 1 ? 'the group of cells' : `the ${count(n)} groups of cells`)],
-  ['bound', (n) => plural(n, 'bound of suppressed values', 'bounds of suppressed values')],
+  ['bound', (n) => plural(n, 'extreme of values known to within limits', 'extremes of values known to within limits')],
   ['robust', (n) => (n === 1 ? 'the other kind of error' : `${count(n)} other kinds of error`)],
 ];
 
@@ -119,7 +123,7 @@ function kindsTold(tried: readonly Overturn[]): string {
   return list([...phrases(['rival', 'exponent', 'bound', 'robust']), ...deleted]);
 }
 
-/** On a log scale: the coefficient as a factor on the outcome itself. */
+/** On a log or logit scale: the coefficient as a factor on the outcome itself, or on its odds. */
 export function factorSentence(
   { plan, fit }: Pick<Result, 'plan' | 'fit'>,
   factor: { readonly estimate: number; readonly low: number | null; readonly high: number | null },
@@ -129,7 +133,9 @@ export function factorSentence(
     factor.low === null || factor.high === null
       ? ''
       : ` (${levelText(fit.inference.level)} interval ${text(factor.low)} to ${text(factor.high)})`;
-  return `On the scale of ${outcomeName(plan)} that is a factor of ${text(factor.estimate)}${range}.`;
+  return plan.outcomeScale === 'logit'
+    ? `The odds of ${outcomeName(plan)} are multiplied by ${text(factor.estimate)}${range}.`
+    : `On the scale of ${outcomeName(plan)} that is a factor of ${text(factor.estimate)}${range}.`;
 }
 
 /** Where more cautions stand than page one carries. */

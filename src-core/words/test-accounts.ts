@@ -2,6 +2,7 @@ import type { Evidence } from '../protocol/result';
 import { testWords } from './evidence-names';
 import { count, list, number } from './numbers';
 import { whyNotText } from './readings';
+import { parameterSign } from './structures';
 
 /** The auxiliary regression of a test: what was regressed on what, and what it divides by. */
 function auxiliaryText({ test, detail }: Evidence): string {
@@ -42,9 +43,17 @@ function slopeText(detail: Evidence['detail']): string {
   return `squared residuals on ${on}: intercept (${first}) ${number(intercept, { digits: 3 })}${se(detail['intercept_se'])}, slope (${second}) ${number(slope, { digits: 3 })}${se(detail['slope_se'])}`;
 }
 
+/** A likelihood ratio names what it sets to 0. */
+function asksOf({ test, detail }: Evidence): string {
+  const zero = Array.isArray(detail['zero']) ? detail['zero'].filter((one) => typeof one === 'string') : [];
+  if (test !== 'boundary-likelihood-ratio' || zero.length === 0) return testWords[test].asks;
+  const signs = list(zero.map(parameterSign));
+  return zero.length === 1 ? `Is ${signs} above zero?` : `Is any of ${signs} above zero?`;
+}
+
 /** What a test asks of the data, then how it was made, or why it has no say. */
 export function testAccount(one: Evidence): string {
   const more = whyNotText(one) ?? auxiliaryText(one);
-  const asks = testWords[one.test].asks;
+  const asks = asksOf(one);
   return more === '' ? asks : `${asks} ${more.charAt(0).toUpperCase()}${more.slice(1)}.`;
 }

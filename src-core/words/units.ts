@@ -1,3 +1,4 @@
+import { isLinked } from '../protocol/linked';
 import type { Plan, SimpleTerm, Term } from '../protocol/plan';
 import type { Result } from '../protocol/result';
 import { factorsOf, interceptName, levelName, termName } from '../protocol/term-names';
@@ -13,6 +14,11 @@ export function outcomeName({ roles }: Plan): string {
 /** The outcome as the fit sees it: "log(rate)" where it is fitted on a log scale. */
 export function responseName(plan: Plan): string {
   return plan.outcomeScale === 'identity' ? outcomeName(plan) : `${plan.outcomeScale}(${outcomeName(plan)})`;
+}
+
+/** What the observed and fitted values of cells are of: under maximum likelihood with a link the outcome itself. */
+export function cellValueName(plan: Plan): string {
+  return isLinked(plan) ? outcomeName(plan) : responseName(plan);
 }
 
 /** The unit of fitted values and coefficients' numerators; null where the plan states none. */

@@ -1,8 +1,11 @@
 import { parentPort } from 'node:worker_threads';
 import { refuse } from '@core/protocol/outcome';
 import { answersFrom } from './answers';
+import { shareKernels } from './kernels';
 import type { EngineKind, FromEngine, ToEngine } from './questions';
 import { openShelf } from './shelf';
+
+shareKernels(import.meta.filename);
 
 // The engine's thread: files and columns stay here, one question at a time.
 const ROOM = 128_000_000;

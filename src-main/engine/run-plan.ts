@@ -7,6 +7,7 @@ import type { Plan } from '@core/protocol/plan';
 import type { Result } from '@core/protocol/result';
 import type { Hooks, SourceTable } from '@core/protocol/source';
 import { type Fetch, fromFolder, gather, type Input } from './inputs';
+import { useKernels } from './kernels';
 
 /** A plan with all that its fit took and gave. */
 export interface Run {
@@ -47,6 +48,7 @@ export function fitSources(of: {
 }): Outcome<Result> {
   const cells = prepareCells(of);
   if (!cells.ok) return cells;
+  useKernels(cells.value.count);
   const result = analyse({ plan: of.plan, cells: cells.value, hooks: of.hooks });
   return result.ok && of.hooks.cancelled() ? refuse('cancelled', {}) : result;
 }

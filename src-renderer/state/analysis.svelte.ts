@@ -1,6 +1,6 @@
 import type { NamedInput } from '@core/protocol/bridge';
-import type { AlsoChanged, Edited } from '@core/protocol/edit-structure';
-import type { Plan } from '@core/protocol/plan';
+import { type AlsoChanged, type Edited, stateVariance } from '@core/protocol/edit-structure';
+import type { Plan, Variance } from '@core/protocol/plan';
 import type { Coefficient, Result } from '@core/protocol/result';
 import { headlineTerm } from '@core/words/headline';
 import { session } from './session.svelte';
@@ -19,6 +19,8 @@ class Analysis {
   also = $state.raw<readonly AlsoChanged[]>([]);
   /** Columns of the plan's tables, derived ones included; asked for when a term is to be added. */
   columns = $state.raw<readonly string[]>([]);
+  /** Label columns of which every text is a number: cells can stand in their order. */
+  orders = $state.raw<readonly string[]>([]);
   #columnsOf: string | null = null;
 
   /** The plan looked at, once its structure is stated. */
@@ -38,6 +40,13 @@ class Analysis {
     this.plan !== null && session.result !== null && JSON.stringify(session.result.plan) !== JSON.stringify(this.plan),
   );
 
+  /** States another structure; the one that stood stays beside, unless its fit was refused for what it says. */
+  async state(variance: Variance, how: Change): Promise<void> {
+    if (this.plan === null) return;
+    const refused = session.problems.some(({ at }) => at === '/variance' || at?.startsWith('/variance/') === true);
+    await this.change(stateVariance(this.plan, variance, { refused }), how);
+  }
+
   look(term: string): void {
     this.#asked = term;
   }
@@ -53,13 +62,19 @@ class Analysis {
   async learnColumns(): Promise<void> {
     const plan = session.plan;
     if (plan === null) return;
-    const of = JSON.stringify([plan.data, session.inputs]);
+    const label = plan.roles.label ?? [];
+    const of = JSON.stringify([plan.data, label, session.inputs]);
     if (of === this.#columnsOf) return;
     const look = await session.ask('data.look', { plan, inputs: [...session.inputs] });
     if (look === null) return;
     this.columns = look.columns;
+    this.orders = label.filter((_, k) => (look.packed.keys[k] ?? []).every(isNumber));
     this.#columnsOf = of;
   }
+}
+
+function isNumber(text: string): boolean {
+  return /^[-+]?\d+([.,]\d+)?$/.test(text.trim());
 }
 
 function termInView(result: Result | null, asked: string | null): string | null {

@@ -1,9 +1,11 @@
 import { fitStructure } from '@core/estimate/fit';
 import type { Design } from '@core/model/design';
-import { joinParts } from '@core/model/structure';
+import { joinParts } from '@core/model/structure-join';
 import { fromDoubles } from '@core/numbers/decimals';
 import { type Random, seeded } from '@core/numbers/random';
 import { readSource } from '@main/intake/read-source';
+
+export { createProject } from '@main/project/project';
 
 function designOf(random: Random, cells: number, terms: number): Design {
   const columns = Array.from({ length: terms }, (_, j) =>

@@ -1,10 +1,12 @@
 // `npm run bench`: figures to standard output; they never fail. Core is bundled as the program bundles it, then measured.
 import { spawnSync } from 'node:child_process';
-import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { existsSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
 import { pathToFileURL } from 'node:url';
 import { build } from 'vite';
+import { compareAll } from './compared.ts';
+import { compareProject, compareStart } from './whole.ts';
 import { measureWindow } from './window.ts';
 
 const root = resolve(import.meta.dirname, '../..');
@@ -41,13 +43,27 @@ await build({
   logLevel: 'warn',
   resolve: { alias: { '@core': join(root, 'src-core'), '@main': join(root, 'src-main') } },
   build: {
-    ssr: join(root, 'test/bench/measured.ts'),
+    ssr: true,
     outDir: bundle,
-    rolldownOptions: { external: ['better-sqlite3', 'pdfkit'] },
+    rolldownOptions: {
+      input: { measured: join(root, 'test/bench/measured.ts'), tasks: join(root, 'test/bench/tasks.ts') },
+      external: ['better-sqlite3', 'pdfkit'],
+    },
   },
 });
 const measured = (await import(pathToFileURL(join(bundle, 'measured.js')).href)) as typeof import('./measured.ts');
 
+const [peers, picked = ''] = process.argv.slice(2);
+if (peers === '--peers') {
+  const { load, tasks } = (await import(pathToFileURL(join(bundle, 'tasks.js')).href)) as typeof import('./tasks.ts');
+  const kernels = join(root, 'out/kernels/kernels.wasm');
+  console.log(existsSync(kernels) && load(readFileSync(kernels)) ? 'compiled kernels' : 'kernels in TypeScript');
+  compareAll(tasks, scratch, picked);
+  if ('start'.includes(picked)) compareStart(root, scratch, measured.tableText(1000));
+  if ('project'.includes(picked)) compareProject(scratch, measured.createProject);
+  rmSync(scratch, { recursive: true, force: true });
+  process.exit();
+}
 for (const cells of [1_000, 100_000, 1_000_000]) {
   const fit = measured.prepareFit(cells, 10);
   say(`one fit, per size, ${cells} cells x 10 columns`, timed(cells > 500_000 ? 3 : 7, fit));

@@ -1,17 +1,11 @@
+import type { Code } from '@core/protocol/problems';
 import type { Result } from '@core/protocol/result';
+import { reportOf } from '@core/report/report-of';
+import { sentence } from '@core/words/problems';
 import { describe, expect, it } from 'vitest';
+import { faultsOf } from '../report/walk';
 import { answered, type Columns, refusedOrWhole, runOn, type Said, searchRefusals, structures } from './hostile';
-
-/** The same stream of numbers between 0 and 1 for the same seed. */
-function stream(seed: number): () => number {
-  let state = Math.imul(seed, 2654435761) >>> 0;
-  const next = () => {
-    state = (Math.imul(state, 1664525) + 1013904223) >>> 0;
-    return (state >>> 8) / 2 ** 24;
-  };
-  for (let i = 0; i < 8; i++) next();
-  return next;
-}
+import { drawnPlan, stream } from './random-plans';
 
 interface Made {
   readonly size?: (g: number) => number;
@@ -325,5 +319,81 @@ describe('random plans', () => {
       if (codes.length === 0) answers++;
     }
     expect(answers).toBeGreaterThan(50);
+  });
+});
+
+describe('random plans over the whole contract', () => {
+  /** What such a plan may be refused for: by its form, its data, its model, or its fit. */
+  const codes: ReadonlySet<string> = new Set<Code>([
+    'not-together',
+    'not-identified',
+    'not-linear',
+    'unknown-parameter',
+    'out-of-range',
+    'correlated-cells',
+    'order-repeats',
+    'matrix-not-positive-definite',
+    'transform-undefined',
+    'fewer-cells-than-terms',
+    'dependent-columns',
+    'one-level',
+    'cluster-cuts-block',
+    'cluster-decides',
+    'too-few-clusters',
+    'leverage-one',
+    'no-convergence',
+    'nothing-left-over',
+    'fitted-outside',
+    'separated',
+    'not-settled',
+  ]);
+  const refusals = new Map<string, number>();
+  const seen = new Set<string>();
+  let answers = 0;
+
+  /** Runs the plan of a seed: nothing is thrown, and no result, report or refusal has a hole. */
+  function judge(seed: number): void {
+    const { columns, said, files } = drawnPlan(seed);
+    const run = runOn(columns, said, files);
+    for (const code of refusedOrWhole(run)) {
+      expect(codes, `seed ${seed}`).toContain(code);
+      refusals.set(code, (refusals.get(code) ?? 0) + 1);
+    }
+    if (!run.ok) {
+      expect(faultsOf(run.problems.map(sentence)), `seed ${seed}`).toEqual([]);
+      return;
+    }
+    answers++;
+    const { plan } = run.value;
+    for (const part of plan.variance.parts) {
+      seen.add(part.kind);
+      if ('correlation' in part && part.correlation) seen.add(part.correlation.kind);
+    }
+    const { inference } = plan;
+    seen.add('correction' in inference ? inference.correction : inference.kind);
+    seen.add(plan.outcomeScale).add(plan.estimate.method);
+    seen.add(typeof plan.target === 'string' ? plan.target : 'own target');
+    expect(faultsOf(reportOf({ result: run.value, edition: null })), `seed ${seed}`).toEqual([]);
+    expect(
+      run.value.selfChecks.filter(({ passed }) => !passed),
+      `seed ${seed}`,
+    ).toEqual([]);
+  }
+
+  const firsts = Array.from({ length: 10 }, (_, i) => 1 + 20 * i);
+  it.each(firsts)('twenty from seed %i on are answered without a hole, or refused by a code', (from) => {
+    for (let seed = from; seed < from + 20; seed++) judge(seed);
+  });
+
+  it('most of them are answered, and no kind of part, correlation, method, target or inference is missing', () => {
+    const told = [...refusals].sort(([, a], [, b]) => b - a).map(([code, often]) => `${code} ${often}`);
+    console.log(`${answers} of 200 random plans answered; refused: ${told.join(', ')}`);
+    expect(answers).toBeGreaterThan(100);
+    const kinds =
+      'constant per-size given matrix size-power proxy log-linear per-class binomial counts between shared exchangeable serial ' +
+      'model HC0 HC1 HC2 HC3 HC4 CR0 CR1 CR2 CR3 wild kenward-roger knapp-hartung identity log logit ' +
+      'least-squares two-step full restricted moments structure persons cells diagonal';
+    expect(kinds.split(' ').filter((kind) => !seen.has(kind))).toEqual([]);
+    expect(seen).toContain('own target');
   });
 });

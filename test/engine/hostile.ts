@@ -11,17 +11,25 @@ export type Columns = Readonly<Record<string, readonly (number | string)[]>>;
 /** What a plan says besides its format and file. */
 export type Said = Readonly<Record<string, unknown>>;
 
+/** Texts of files beside the table, by name. */
+export type Files = Readonly<Record<string, string>>;
+
 /** A plan on a table, from its text and the bytes of the table to the result. */
-export function runOn(columns: Columns, said: Said): Outcome<Result> {
-  return hookedRun(columns, said, unhurried);
+export function runOn(columns: Columns, said: Said, files: Files = {}): Outcome<Result> {
+  return hookedRun(columns, said, unhurried, files);
 }
 
-export function hookedRun(columns: Columns, said: Said, hooks: Hooks): Outcome<Result> {
+export function hookedRun(columns: Columns, said: Said, hooks: Hooks, files: Files = {}): Outcome<Result> {
   const names = Object.keys(columns);
   const rows = (columns[names[0] as string] ?? []).map((_, g) => names.map((name) => columns[name]?.[g]).join(','));
-  const bytes = new TextEncoder().encode([names.join(','), ...rows].join('\n'));
-  const text = JSON.stringify({ format: 'steelyard-plan/1', data: { file: 'cells.csv' }, ...said });
-  const run = runText({ text, fetch: () => done(bytes), hooks });
+  const table = [names.join(','), ...rows].join('\n');
+  const text = JSON.stringify({
+    format: 'steelyard-plan/1',
+    ...said,
+    data: { file: 'cells.csv', ...(said['data'] as Said) },
+  });
+  const fetch = (file: string) => done(new TextEncoder().encode(files[file] ?? table));
+  const run = runText({ text, fetch, hooks });
   return run.ok ? done(run.value.result) : run;
 }
 

@@ -1,7 +1,10 @@
+import { independent } from '@core/algebra/covariance';
 import { fitStructure, underStructure } from '@core/estimate/fit';
 import { identificationOf } from '@core/estimate/identified';
 import { heterogeneityAt, momentTau2 } from '@core/estimate/moments';
-import { joinParts, type SamplingPart, withFixed } from '@core/model/structure';
+import { withFixed } from '@core/model/structure';
+import { joinParts } from '@core/model/structure-join';
+import type { SamplingPart } from '@core/model/variance-part';
 import { fromDoubles } from '@core/numbers/decimals';
 import type { Outcome } from '@core/protocol/outcome';
 import type { Estimate } from '@core/protocol/plan';
@@ -121,7 +124,7 @@ describe('a method', () => {
   });
 
   it('meets weights of another target: its own errors, and the structure’s fit back', () => {
-    const weighting = problem.sizes.map((n) => 1 / n);
+    const weighting = independent(problem.sizes.map((n) => 1 / n));
     const estimate: Estimate = { method: 'restricted' };
     const aside = open(fitStructure({ response, design, structure, estimate, weighting }));
     const own = open(fitStructure({ response, design, structure, estimate }));

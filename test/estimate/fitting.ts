@@ -1,3 +1,4 @@
+import { type Covariance, independent } from '@core/algebra/covariance';
 import { fitStructure } from '@core/estimate/fit';
 import type { Fitted } from '@core/estimate/fitted';
 import { designOf } from '@core/model/design';
@@ -14,12 +15,12 @@ export function open<T>(outcome: Outcome<T>): T {
 }
 
 /** A target's weighting, as the whole path makes it: persons 1/n, cells 1, a structure of its own at known parameters. */
-function weightingOf(plan: Plan, cells: Cells): Float64Array | null {
+function weightingOf(plan: Plan, cells: Cells): Covariance | 'diagonal' | null {
   if (plan.target === 'structure') return null;
-  if (plan.target === 'cells') return new Float64Array(cells.count).fill(1);
-  if (plan.target === 'persons') return (cells.size as Float64Array).map((n) => 1 / n);
-  if (plan.target === 'diagonal') throw new Error('not a target of these cases');
-  return open(structureOf({ variance: plan.target, cells, at: '/target' })).sampling;
+  if (plan.target === 'cells') return independent(new Float64Array(cells.count).fill(1));
+  if (plan.target === 'persons') return independent((cells.size as Float64Array).map((n) => 1 / n));
+  if (plan.target === 'diagonal') return 'diagonal';
+  return independent(open(structureOf({ variance: plan.target, cells, at: '/target' })).sampling);
 }
 
 /** Fits a plan on cells, from terms to coefficients. */

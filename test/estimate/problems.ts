@@ -1,5 +1,7 @@
 import type { Design } from '@core/model/design';
-import { joinParts, type SamplingPart, type Structure } from '@core/model/structure';
+import type { Structure } from '@core/model/structure';
+import { joinParts } from '@core/model/structure-join';
+import type { SamplingPart } from '@core/model/variance-part';
 import { type Decimals, fromDoubles } from '@core/numbers/decimals';
 import { pow } from '@core/numbers/elementary';
 import { seeded } from '@core/numbers/random';

@@ -275,7 +275,7 @@ describe('a caution', () => {
       },
     }));
     const facts = (code: string) => cautions.find((one) => one.code === code)?.facts;
-    expect(facts('cells-suppressed')).toEqual({ cells: 2, labels: ['D61', 'D62'] });
+    expect(facts('cells-suppressed')).toEqual({ cells: 2, labels: ['D61', 'D62'], bounded: 0 });
     expect(facts('cells-omitted')).toMatchObject({
       omitted: 3,
       reasons: { 'suppressed-confidential': 1, 'suppressed-unknown': 1, blank: 1 },

@@ -1,3 +1,4 @@
+import { independent } from '@core/algebra/covariance';
 import { smallest } from '@core/evidence/search';
 import { structureEvidence } from '@core/evidence/structure-evidence';
 import type { Plan } from '@core/protocol/plan';
@@ -131,7 +132,10 @@ test('a cancelled run ends without departures', () => {
 test('under another target the evidence is that of the structure', () => {
   const { fitted } = perSize;
   const shifted = { ...fitted, targetIsStructure: false, whitened: fitted.whitened.map((r) => r + 1) };
-  const found = structureEvidence({ ...perSize, fitted: { ...shifted, weighting: new Float64Array(60).fill(1) } });
+  const found = structureEvidence({
+    ...perSize,
+    fitted: { ...shifted, weighting: independent(new Float64Array(60).fill(1)) },
+  });
   expect(found.map(({ p }) => p)).toEqual(evidence.map(({ p }) => p));
 });
 

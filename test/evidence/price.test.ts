@@ -114,7 +114,7 @@ it('never makes another weighting cheaper than the right one, whatever the table
         { parts: [{ kind: 'size-power', exponent: 0.3, correlation: null }], fixed: {} },
       ]);
       for (const one of pricesOf({ fitted: known.fitted, rivals })) {
-        expect(Math.min(...one.price.map(({ cost }) => cost))).toBeGreaterThanOrEqual(0);
+        expect(Math.min(...one.price.map(({ cost }) => cost as number))).toBeGreaterThanOrEqual(0);
         expect(Math.min(...one.eigenvalues.map(Number))).toBeGreaterThanOrEqual(0);
         // The variance by its direct product, and moves that add up to the difference of the coefficients.
         for (const [j, { actualSe }] of one.price.entries()) {
@@ -146,8 +146,8 @@ it('prices under another target against the weights of the structure, not agains
     fitted: known.fitted,
     rivals: rivalsOf(known, ['constant', 'per-size']),
   });
-  expect(perSizeRival?.price.every(({ cost }) => cost < 1e-20)).toBe(true);
-  expect(constant?.price.every(({ cost }) => cost > 0)).toBe(true);
+  expect(perSizeRival?.price.every(({ cost }) => cost !== null && cost < 1e-20)).toBe(true);
+  expect(constant?.price.every(({ cost }) => cost !== null && cost > 0)).toBe(true);
   const [chosen] = squareOf([known.fitted]);
   expect(chosen?.se).toBeCloseTo(constant?.price[0]?.actualSe ?? 0, 12);
 });

@@ -1,6 +1,6 @@
 import { fitStructure } from '@core/estimate/fit';
 import { dumouchelDuncan } from '@core/evidence/added-columns';
-import { boundaryLikelihoodRatio } from '@core/evidence/boundary';
+import { boundaryLikelihoodRatios } from '@core/evidence/boundary';
 import { brownForsythe } from '@core/evidence/brown-forsythe';
 import { dependenceOf } from '@core/evidence/dependence';
 import { type Frame, frameOf } from '@core/evidence/frame';
@@ -29,7 +29,7 @@ const single = {
   'dumouchel-duncan': dumouchelDuncan,
   'shapiro-wilk': normalityOf,
   heterogeneity: (frame: Frame) => heterogeneity(frame, givenUp),
-  'boundary-likelihood-ratio': (frame: Frame) => boundaryLikelihoodRatio(frame, givenUp),
+  'boundary-likelihood-ratio': (frame: Frame) => boundaryLikelihoodRatios(frame, givenUp)[0] as Evidence,
   dependence: (frame: Frame) => dependenceOf(frame, givenUp)[0] as Evidence,
 };
 

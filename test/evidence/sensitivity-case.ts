@@ -1,3 +1,4 @@
+import { independent } from '@core/algebra/covariance';
 import { fitStructure } from '@core/estimate/fit';
 import type { Fitted } from '@core/estimate/fitted';
 import { judgeOf } from '@core/evidence/judge';
@@ -40,7 +41,7 @@ export function fittedPlan(plan: Plan, cells: Cells): Fitted {
   const known = open(learnTerms({ terms: plan.terms, intercept: plan.intercept, cells }));
   const design = open(designOf(known, cells));
   const structure = open(structureOf({ variance: plan.variance, cells }));
-  const weighting = plan.target === 'cells' ? new Float64Array(cells.count).fill(1) : null;
+  const weighting = plan.target === 'cells' ? independent(new Float64Array(cells.count).fill(1)) : null;
   return open(fitStructure({ response: cells.outcome, design, structure, estimate: plan.estimate, weighting }));
 }
 

@@ -157,23 +157,6 @@ describe('a cell that alone carries a level', () => {
   });
 });
 
-describe('kinds of inference of later versions', () => {
-  it('are refused by name', () => {
-    const plan = planFor({ outcome: 'y', size: 'n', terms: [{ column: 'x' }], parts: perSize });
-    const { fitted, cells } = fitOf(plan, withTable(small)(plan));
-    const kinds: Inference[] = [
-      { kind: 'kenward-roger', level: 0.95 },
-      { kind: 'clustered', level: 0.95, correction: 'CR2', by: ['soil'], alsoBy: null },
-      { kind: 'wild', level: 0.95, by: ['soil'], replications: 9999, seed: 1 },
-    ];
-    for (const inference of kinds)
-      expect(inferenceOf({ fitted, cells, plan: { ...plan, inference } })).toEqual({
-        ok: false,
-        problems: [{ code: 'not-available', at: '/inference/kind', facts: { what: inference.kind } }],
-      });
-  });
-});
-
 describe('questions that the model cannot answer', () => {
   const terms: Plan['terms'] = [
     { column: 'x', transform: 'inverse' },

@@ -1,3 +1,4 @@
+import { type Covariance, independent } from '@core/algebra/covariance';
 import { fitStructure } from '@core/estimate/fit';
 import type { Fitted } from '@core/estimate/fitted';
 import { betweenRulesOf } from '@core/inference/between-rules';
@@ -6,11 +7,12 @@ import { type Inferred, inferenceOf } from '@core/inference/inferred';
 import { intraclassOf } from '@core/inference/intraclass';
 import { likelihoodsOf } from '@core/inference/likelihoods';
 import { questionsOf } from '@core/inference/questions';
-import { robustBeside } from '@core/inference/robust';
+import { robustBeside } from '@core/inference/robust-beside';
 import type { Design } from '@core/model/design';
 import { designOf } from '@core/model/design';
 import type { KnownTerm } from '@core/model/known-terms';
 import { learnTerms } from '@core/model/learn-terms';
+import { omegaAt } from '@core/model/structure';
 import { structureOf } from '@core/model/structure-of';
 import type { Outcome } from '@core/protocol/outcome';
 import type { Plan } from '@core/protocol/plan';
@@ -43,11 +45,12 @@ export function fitOf(plan: Plan, cells: Cells): Fit {
   return { plan, cells, known, design, fitted };
 }
 
-function weightingOf({ target }: Plan, cells: Cells): Float64Array | null {
-  if (target === 'structure' || target === 'diagonal') return null;
-  if (target === 'cells') return new Float64Array(cells.count).fill(1);
-  if (target === 'persons') return (cells.size as Float64Array).map((n) => 1 / n);
-  return must(structureOf({ variance: target, cells })).variancesAt(new Float64Array([1]));
+function weightingOf({ target }: Plan, cells: Cells): Covariance | 'diagonal' | null {
+  if (target === 'structure') return null;
+  if (target === 'diagonal') return 'diagonal';
+  if (target === 'cells') return independent(new Float64Array(cells.count).fill(1));
+  if (target === 'persons') return independent((cells.size as Float64Array).map((n) => 1 / n));
+  return omegaAt(must(structureOf({ variance: target, cells })), new Float64Array([1]));
 }
 
 export type Parts = Pick<Result, 'fit' | 'robustBeside' | 'questions' | 'betweenRules' | 'intraclass'>;
@@ -61,7 +64,7 @@ export function partsOf(fit: Fit): Parts & { readonly inferred: Inferred } {
     inferred,
     fit: fitResultOf({ fitted, inferred, cells, plan, carriedBy: [], likelihoods }),
     robustBeside: robustBeside(fitted),
-    questions: questionsOf({ plan, fitted, inferred, known }),
+    questions: questionsOf({ plan, fitted, inferred, known, cells }),
     betweenRules: betweenRulesOf(fitted, level),
     intraclass: intraclassOf(likelihoods, level),
   };

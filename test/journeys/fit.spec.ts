@@ -312,16 +312,18 @@ describe('the fit of the demo', () => {
 });
 
 describe('the variance of the demo', () => {
-  it('is proposed from three questions with reasons, names what this version lacks, and changes nothing until it is taken', async () => {
+  it('is proposed from three questions with reasons, and changes nothing until it is taken', async () => {
     await goTo(page, 'Variance');
     const questions = page.locator('[data-part=three-questions]');
     const before = await page.locator('[data-part=statement]').innerText();
     expect(await questions.innerText()).toContain('This is the structure that stands.');
     await choose(page, questions.getByRole('button', { name: /^No: each cell stands alone/ }), /same parish/);
-    expect(await questions.getByRole('note').innerText()).toContain('a shock shared by a group');
+    expect(await questions.innerText()).toContain('A shock ω² that all cells of a group share');
     await choose(page, questions.getByRole('button', { name: /^Yes: places or years/ }), /^No: what is left/);
     expect(await page.locator('[data-part=statement]').innerText()).toBe(before);
     await opened.picture('variance-proposal');
+    expect(await questions.innerText()).toContain('it is the sampling errors of a group that go together');
+    await choose(page, questions.getByRole('button', { name: /^Yes, cells of the same parish/ }), /^No: each cell/);
     await questions.getByRole('button', { name: 'State this structure' }).click();
     await fitted(page);
     await expect.poll(() => page.locator('[data-part=statement]').innerText(), SOON).toContain('nothing beyond it');

@@ -1,7 +1,10 @@
+import { type Covariance, independent } from '@core/algebra/covariance';
 import { fitStructure } from '@core/estimate/fit';
 import type { Fitted } from '@core/estimate/fitted';
 import { type Design, designOf } from '@core/model/design';
-import { joinParts, type SamplingPart, type Structure } from '@core/model/structure';
+import type { Structure } from '@core/model/structure';
+import { joinParts } from '@core/model/structure-join';
+import type { SamplingPart } from '@core/model/variance-part';
 import { type Decimals, fromDoubles, takeRows } from '@core/numbers/decimals';
 import type { Estimate } from '@core/protocol/plan';
 import type { Cells } from '@core/table/cells';
@@ -58,7 +61,7 @@ function structureOfKind(kind: Kind, { sizes, errors }: Data): Structure {
   return joinParts({ cells: sizes.length, sampling, between: kind.startsWith('between') ? 'last' : 'none', fixed: {} });
 }
 
-function fitted(kind: Kind, data: Data, weighting: Float64Array | null = null): Fitted {
+function fitted(kind: Kind, data: Data, weighting: Covariance | null = null): Fitted {
   const estimate: Estimate = { method: kind.startsWith('between') ? 'restricted' : 'least-squares' };
   const { response, design } = data;
   return open(fitStructure({ response, design, structure: structureOfKind(kind, data), estimate, weighting }));
@@ -152,7 +155,7 @@ describe.each(kinds)('a fit under %s', (kind) => {
   it('has pulls whose products with the observations add up to the coefficient, under another target too', () => {
     fc.assert(
       fc.property(problems, fc.boolean(), (data, aside) => {
-        const fit = fitted(kind, data, aside ? data.sizes.map((n) => 1 / (1 + n)) : null);
+        const fit = fitted(kind, data, aside ? independent(data.sizes.map((n) => 1 / (1 + n))) : null);
         for (const [j, row] of fit.pulls.entries()) {
           const size = row.reduce((sum, c, g) => sum + Math.abs(c * (data.response.high[g] as number)), 0);
           expect(Math.abs(dot(row, data.response.high) - (fit.coefficients[j] as number))).toBeLessThan(1e-13 * size);
@@ -167,7 +170,7 @@ describe.each(kinds)('a fit under %s', (kind) => {
   it('has the covariance C Omega C', () => {
     fc.assert(
       fc.property(problems, fc.boolean(), (data, aside) => {
-        const fit = fitted(kind, data, aside ? data.sizes.map((n) => 1 / (1 + n)) : null);
+        const fit = fitted(kind, data, aside ? independent(data.sizes.map((n) => 1 / (1 + n))) : null);
         for (const [i, a] of fit.pulls.entries())
           for (const [j, b] of fit.pulls.entries()) {
             const size = Math.sqrt((fit.covariance[i]?.[i] as number) * (fit.covariance[j]?.[j] as number));

@@ -96,20 +96,6 @@ describe('a variance structure', () => {
     expect(at(open(structureOf({ variance: 'per-size', cells, at: '/beside/0' })), 1)).toEqual([1 / 4, 1 / 9, 1 / 16]);
   });
 
-  it('refuses by name, all together, what this version does not fit', () => {
-    const parts: Part[] = [
-      { kind: 'log-linear', terms: [{ column: 'z' }], ...plain },
-      { kind: 'between', correlation: { kind: 'serial', by: [], order: 'z' } },
-      { kind: 'shared', by: ['z'] },
-    ];
-    const outcome = structureOf({ variance: variance(parts), cells, at: '/target' });
-    expect(outcome.ok ? [] : outcome.problems).toEqual([
-      { code: 'not-available', at: '/target/parts/0', facts: { what: 'log-linear' } },
-      { code: 'not-available', at: '/target/parts/1/correlation', facts: { what: 'serial' } },
-      { code: 'not-available', at: '/target/parts/2', facts: { what: 'shared' } },
-    ]);
-  });
-
   it('refuses a proxy that is not above zero, as its logarithm would be', () => {
     const outcome = structureOf({
       variance: variance([proxy(1)]),

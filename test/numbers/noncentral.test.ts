@@ -22,6 +22,35 @@ function close(found: number, truth: number, share = 1e-12): void {
   else expect(Math.abs(found / truth - 1)).toBeLessThan(share);
 }
 
+describe('noncentral t tails far from 0', () => {
+  // Integrals of the normal density times chi-square tails by mpmath 1.3, 25 digits.
+  it.each([
+    [10050, 5, 10000.001, 0.5780333094142475],
+    [20000, 3, 10000.001, 0.138614957439759],
+    [2e9, 7, 1e9, 0.0276255536773535],
+  ])('P(T > %d) on %d degrees of freedom at noncentrality %d', (t, freedom, noncentrality, truth) => {
+    close(noncentralTUpper(t, freedom, noncentrality), truth);
+  });
+
+  it('go over into the mixture at the point from which they are integrated', () => {
+    for (const [t, freedom] of [
+      [9000, 50],
+      [20000, 3],
+      [10001, 1e6],
+    ] as const) {
+      const [below, above] = [9999.99999, 10000.00001].map((far) => noncentralTUpper(t, freedom, far));
+      expect(above).toBeGreaterThan(below as number);
+      expect((above as number) / (below as number)).toBeLessThan(1 + 1e-5);
+    }
+  });
+
+  it('end at once, at 1 and 0, where nothing is left to tell', () => {
+    expect(noncentralTUpper(3, 12, 1e300)).toBeCloseTo(1, 14);
+    expect(noncentralTUpper(3, 12, -1e300)).toBe(0);
+    expect(noncentralTUpper(-3, 12, 1e300)).toBe(1);
+  });
+});
+
 describe('noncentral tails', () => {
   it('without noncentrality are the central ones', () => {
     fc.assert(

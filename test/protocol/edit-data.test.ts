@@ -2,13 +2,16 @@ import { draftOf, readDraft, unsaidRead } from '@core/protocol/draft';
 import {
   meaningOf,
   placeOf,
+  stateScale,
   withFootnote,
   withJoin,
   withoutStep,
   withRead,
+  withScale,
   withToken,
   withUnit,
 } from '@core/protocol/edit-data';
+import { normalPlan } from '@core/protocol/read';
 import { describe, expect, it } from 'vitest';
 
 const draft = draftOf({ name: 'a.csv', sha256: '0'.repeat(64) });
@@ -62,5 +65,49 @@ describe('units and drafts', () => {
     expect(readDraft('{"format":"other"}')).toBeNull();
     expect(readDraft('not JSON')).toBeNull();
     expect(readDraft(null)).toBeNull();
+  });
+});
+
+describe('the scale of the outcome', () => {
+  const rates = (plan: object) => {
+    const read = normalPlan({
+      format: 'steelyard-plan/1',
+      data: { file: 'a.csv' },
+      roles: { outcome: null, count: 'k', exposure: 'e' },
+      variance: { parts: [{ kind: 'counts', scale: 'free' }] },
+      ...plan,
+    });
+    return read.ok ? read.value : expect.fail(JSON.stringify(read.problems));
+  };
+
+  it('takes the method of the structure on the new scale, and takes it back on the old one', () => {
+    const plan = rates({});
+    expect(plan.estimate).toEqual({ method: 'least-squares' });
+    const onLog = withScale(plan, 'log');
+    expect(onLog).toMatchObject({ outcomeScale: 'log', estimate: { method: 'full' }, addedHalf: null });
+    expect(withScale(onLog, 'identity')).toEqual(plan);
+    expect(rates(onLog)).toEqual(onLog);
+  });
+
+  it('keeps a chosen method that the new scale offers', () => {
+    const plan = rates({ estimate: { method: 'two-step' } });
+    expect(withScale(plan, 'log').estimate).toEqual({ method: 'full' });
+    const share = rates({
+      roles: { outcome: 'y', outcomeUnit: 'share', size: 'n' },
+      variance: { parts: [{ kind: 'binomial', scale: 'free' }] },
+      estimate: { method: 'two-step' },
+    });
+    expect(withScale(share, 'logit')).toMatchObject({ estimate: { method: 'two-step' }, addedHalf: 'extreme-cells' });
+  });
+
+  it('lets an inference go that the method does not carry, and says so', () => {
+    const plan = rates({ estimate: { method: 'restricted' }, inference: { kind: 'kenward-roger', level: 0.9 } });
+    const edited = stateScale(plan, 'log');
+    expect(edited.plan.inference).toEqual({ kind: 'model', level: 0.9 });
+    expect(edited.also).toEqual(['estimate', 'inference']);
+  });
+
+  it('waits with method and halves until a structure is stated', () => {
+    expect(withScale(draft.plan, 'logit')).toMatchObject({ outcomeScale: 'logit', estimate: null, addedHalf: null });
   });
 });

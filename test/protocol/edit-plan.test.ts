@@ -40,6 +40,11 @@ describe('stateVariance', () => {
     expect(also).toEqual(['estimate']);
   });
 
+  it('does not keep a structure beside that could not be fitted', () => {
+    const { plan } = stateVariance(planOf(), { parts: [perSize], fixed: {} }, { refused: true });
+    expect(plan.beside).toEqual(['constant']);
+  });
+
   it('keeps a method that was chosen on purpose where it can settle the new structure', () => {
     const { plan, also } = stateVariance(planOf({ estimate: { method: 'full' } }), { parts: [perSize], fixed: {} });
     expect(plan.estimate).toEqual({ method: 'full' });

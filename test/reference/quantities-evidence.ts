@@ -15,7 +15,7 @@ const slopes = ['intercept', 'intercept_se', 'intercept_p', 'slope', 'slope_se',
 const predictions = ['normal', 't_G-1', 't_G-2'];
 
 const names =
-  /^(q_(statistic|df|p)|i_squared|h_squared|prediction_(low|high)|lr_(statistic|p_mixture)|shapiro_wilk_[wp]|squared_residual_on_\w+|dependence)(:|$)/;
+  /^(q_(statistic|df|p)|i_squared|h_squared|prediction_(low|high)|lr_(statistic|p_mixture)|mixture_(correlation|weight)|shapiro_wilk_[wp]|squared_residual_on_\w+|dependence)(:|$)/;
 
 /** True for the names that `valueOf` knows, whatever a result holds. */
 export function isEvidenceQuantity(quantity: string): boolean {
@@ -34,7 +34,26 @@ export function valueOf(quantity: string, evidence: readonly Evidence[]): number
   if (name.startsWith('squared_residual_on_'))
     return part && slopes.includes(part) ? numberIn(of('size-slope'), part) : undefined;
   if (name === 'dependence') return dependence(evidence, part as string, more as string);
+  if (name.startsWith('lr_') || name.startsWith('mixture_')) return boundary(evidence, { name, part, more });
   return between(quantity, of);
+}
+
+/** NAME:SET or mixture_weight:PLACE:SET, a set as "tau_squared=0,omega_squared=0". */
+function boundary(
+  evidence: readonly Evidence[],
+  { name, part, more }: { name: string; part: string | undefined; more: string | undefined },
+): number | null | undefined {
+  const set = (name === 'mixture_weight' ? more : part) ?? '';
+  const wanted = set.split(',').map((one) => (one === 'tau_squared=0' ? 'tau2' : 'omega2'));
+  const entry = evidence.find(({ test, detail: { zero } }) => {
+    const names = Array.isArray(zero) ? zero.map((one) => String(one).split(':')[0]) : [];
+    return test === 'boundary-likelihood-ratio' && names.join() === wanted.join();
+  });
+  if (name === 'lr_statistic') return entry?.statistic;
+  if (name === 'lr_p_mixture') return entry?.p;
+  if (name === 'mixture_correlation') return numberIn(entry, 'correlation');
+  const weights = entry?.detail['weights'];
+  return Array.isArray(weights) ? (weights[Number(part)] as number | null) : undefined;
 }
 
 function figureOf(entry: Evidence | undefined, part: string | undefined): number | null | undefined {
@@ -57,7 +76,6 @@ function dependence(evidence: readonly Evidence[], by: string, figure: string): 
 
 function between(quantity: string, of: (test: EvidenceTest) => Evidence | undefined): number | null | undefined {
   const spread = of('heterogeneity');
-  const ratio = of('boundary-likelihood-ratio');
   switch (quantity) {
     case 'q_statistic':
       return spread?.statistic;
@@ -73,10 +91,6 @@ function between(quantity: string, of: (test: EvidenceTest) => Evidence | undefi
       return numberIn(spread, 'iSquaredTau2');
     case 'h_squared:from_tau_squared':
       return numberIn(spread, 'hSquaredTau2');
-    case 'lr_statistic:tau_squared=0':
-      return ratio?.statistic;
-    case 'lr_p_mixture:tau_squared=0':
-      return ratio?.p;
     default:
       return prediction(quantity, spread);
   }

@@ -38,9 +38,14 @@ export function valueOf(quantity: string, result: InferenceParts): number | null
   const cut = quantity.indexOf(':');
   const [head, name] = [quantity.slice(0, cut), quantity.slice(cut + 1)];
   const coefficient = result.fit.coefficients.find(({ term }) => term === name);
+  if (head === 'wild_count' || head === 'wild_p') {
+    const one = result.fit.wild?.find(({ term }) => term === name);
+    return head === 'wild_count' ? one?.count : one?.p;
+  }
   const take = ofCoefficient[head];
   if (take && coefficient) return take(coefficient);
   if (head === 'standard_error') return parameter(name, result)?.se;
+  if (head === 'gamma' || head === 'phi') return parameter(quantity, result)?.estimate;
   const answer = ofAnswer[head];
   return answer ? ofQuestion(`${name}:${answer}`, result.questions) : undefined;
 }
@@ -63,6 +68,11 @@ const wholes: Record<string, Take> = {
   knapp_hartung_q: ({ fit }) => fit.knappHartungQ,
   chi_square_scale: ({ fit }) => fit.chiSquare?.statistic,
   chi_square_scale_p: ({ fit }) => fit.chiSquare?.p,
+  pearson_chi_square: ({ fit }) => fit.chiSquare?.statistic,
+  minimum_chi_square: ({ fit }) => fit.chiSquare?.statistic,
+  deviance: ({ fit }) => fit.deviance,
+  'phi:binomial': (result) => parameter('phi', result)?.estimate,
+  'phi:counts': (result) => parameter('phi', result)?.estimate,
   q_statistic: ({ fit }) => fit.chiSquare?.statistic,
   q_df: ({ fit }) => fit.chiSquare?.freedom,
   q_p: ({ fit }) => fit.chiSquare?.p,
@@ -71,6 +81,9 @@ const wholes: Record<string, Take> = {
   phi: (result) => parameter('phi', result)?.estimate,
   'phi:per-size': (result) => parameter('phi', result)?.estimate,
   delta: (result) => parameter('delta', result)?.estimate,
+  rho: (result) => parameter('rho', result)?.estimate,
+  omega_squared: (result) => parameter('omega_squared', result)?.estimate,
+  'phi:scale': (result) => parameter('phi', result)?.estimate,
   tau_squared_profile95_low: (result) => parameter('tau_squared', result)?.low,
   tau_squared_profile95_high: (result) => parameter('tau_squared', result)?.high,
   delta_profile95_low: (result) => parameter('delta', result)?.low,
@@ -85,6 +98,7 @@ const ofCoefficient: Record<string, (coefficient: Coefficient) => number | null 
   t_statistic: ({ ratio, reference }) => (reference?.kind === 't' ? ratio : undefined),
   // A published z of a fit that is referred to t here is the same ratio.
   z_statistic: ({ ratio }) => ratio,
+  t_CR0: ({ ratio }) => ratio,
   p_value: ({ p }) => p,
   p_value_normal: ({ ratio }) => (ratio === null ? null : normalTwoSided(Math.abs(ratio))),
   ci95_low: ({ low }) => low,
@@ -96,6 +110,9 @@ const ofCoefficient: Record<string, (coefficient: Coefficient) => number | null 
 const ofAnswer: Record<string, string> = {
   f_statistic: 'statistic',
   f_p: 'p',
+  f_df1: 'freedom1',
+  f_df2: 'freedom2',
+  f_scale: 'scale',
   wald_chi_square: 'statistic',
   wald_p: 'p',
   predicted_mean: 'fitted:estimate',
@@ -113,8 +130,18 @@ const parameterNames: Record<string, string> = {
   delta: 'delta',
 };
 
+/** The cases write `phi:CLASS` and `gamma:TERM` without a space. */
 function parameter(name: string, { fit }: InferenceParts) {
-  return fit.variance.find((each) => each.name === parameterNames[name]);
+  const gamma = name.replace(/^gamma:/, 'gamma: ');
+  const names = [parameterNames[name], gamma, name.replace(/^phi:/, 'phi: ')];
+  return (
+    fit.variance.find((each) => names.includes(each.name)) ??
+    fit.variance.find(
+      (each) =>
+        (name === 'rho' && each.name.startsWith('rho: ')) ||
+        (name === 'omega_squared' && each.name.startsWith('omega2: ')),
+    )
+  );
 }
 
 function ownRule({ fit, betweenRules }: InferenceParts) {

@@ -16,6 +16,7 @@ export interface SensitivityContext {
 }
 
 const cellFields: Readonly<Record<string, keyof CellResult>> = {
+  fitted: 'fitted',
   leverage: 'leverage',
   studentised_internal: 'studentised',
   studentised_external: 'studentisedWithout',
@@ -39,6 +40,17 @@ const priceFields: Readonly<
   claimed_over_actual: 'claimedOverActual',
 };
 
+/** Names that an earlier case gives to the price of equal weights. */
+const ofUnweighted: Readonly<Record<string, string>> = {
+  claimed_standard_error: 'claimed',
+  actual_standard_error: 'actual',
+  cost: 'cost',
+  honesty: 'claimed_over_actual',
+  actual_covariance: 'covariance',
+  eigenvalue_of_difference: 'eigenvalue',
+  overall_efficiency: 'efficiency',
+};
+
 /** The value of one reference quantity; undefined where it is none of these, or its piece is not there. */
 function sensitivityValue(
   quantity: string,
@@ -50,6 +62,10 @@ function sensitivityValue(
   if (name === 'effective_cells') return pieces.effectiveCells;
   if (name === 'break_even') return pieces.breakEven?.find(({ term }) => term === tail)?.intraclass;
   if (name === 'price') return priceValue(tail, pieces, context);
+  const unweighted = ofUnweighted[name];
+  if (unweighted && pieces.beside?.length === 1) {
+    return priceValue(`constant:${unweighted}${tail && `:${tail}`}`, pieces, context);
+  }
   if (name === 'square') return squareValue(tail, pieces, context);
   if (name === 'moved') return movedValue(tail, pieces, context);
   if (name === 'dfbetas') return shiftValue(tail, pieces, context);
@@ -63,7 +79,7 @@ function sensitivityValue(
 }
 
 function cellOf({ cells }: SensitivityPieces, label: string): CellResult | undefined {
-  return cells?.find((cell) => cell.label === label);
+  return cells?.find((cell) => cell.label === label || `row${cell.label}` === label);
 }
 
 function rivalName(rival: Rival): string {

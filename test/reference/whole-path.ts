@@ -1,9 +1,9 @@
-import { readdirSync } from 'node:fs';
+import { readdirSync, readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import type { Outcome } from '@core/protocol/outcome';
 import type { Plan } from '@core/protocol/plan';
 import type { Result } from '@core/protocol/result';
-import { fromFolder } from '@main/engine/inputs';
+import { type Fetch, fromFolder } from '@main/engine/inputs';
 import { runText } from '@main/engine/run-plan';
 import { type CaseFit, caseFile, type Expected, planOf, type ReferenceCase } from '../support/case';
 import { valueOf as ofEvidence } from './quantities-evidence';
@@ -15,7 +15,7 @@ export const caseNames = readdirSync(join(import.meta.dirname, 'cases')).filter(
 
 /** A case's fit as a plan file would hold it: everything that the case expects is asked for. */
 export function wholePlanOf(of: ReferenceCase, fit: CaseFit): Plan {
-  const plan = planOf(of, fit);
+  const plan = asPriced(of, fit) ?? planOf(of, fit);
   const { block, time, response } = of.roles;
   const ordered = fit.spec.order !== undefined && block && time && response;
   const derive: Plan['data']['derive'] = ordered
@@ -24,9 +24,30 @@ export function wholePlanOf(of: ReferenceCase, fit: CaseFit): Plan {
   return { ...plan, data: { ...plan.data, derive }, questions: questionsOfCase(of, plan) };
 }
 
+/** An unweighted fit that a case prices under its given matrix: equal weights on that truth, and the unweighted fit beside it. */
+function asPriced(of: ReferenceCase, fit: CaseFit): Plan | null {
+  const priced = of.expected.some((one) => one.fit === fit.fit && one.quantity.startsWith('actual_standard_error:'));
+  const truth = of.fits.find(({ spec }) => spec.link.kind === 'matrix' && spec.link.scale === 'fixed');
+  return priced && truth ? { ...planOf(of, truth), target: 'cells', beside: ['constant'] } : null;
+}
+
+/** The files of a case; a matrix, which stands there without labels, in the labelled form that a plan's matrix has. */
+function filesOf(of: ReferenceCase): Fetch {
+  const beside = fromFolder(join(caseFile(of.id), '..'));
+  return (file, at) => {
+    const fetched = beside(file, at);
+    if (!fetched.ok || file !== of.roles.matrix) return fetched;
+    const [, ...rows] = readFileSync(caseFile(of.id), 'utf8').trim().split(/\r?\n/);
+    const labels = rows.map((row, g) => (of.roles.label ? (row.split(',')[0] as string) : String(g + 1)));
+    const lines = new TextDecoder().decode(fetched.value).trim().split(/\r?\n/);
+    const text = [['', ...labels].join(','), ...lines.map((line, g) => `${labels[g]},${line}`)].join('\n');
+    return { ok: true, value: new TextEncoder().encode(text) };
+  };
+}
+
 /** From the case's bytes through every room, as the command line goes. */
 export function runCase(of: ReferenceCase, fit: CaseFit): Outcome<Result> {
-  const run = runText({ text: JSON.stringify(wholePlanOf(of, fit)), fetch: fromFolder(join(caseFile(of.id), '..')) });
+  const run = runText({ text: JSON.stringify(wholePlanOf(of, fit)), fetch: filesOf(of) });
   return run.ok ? { ok: true, value: run.value.result } : run;
 }
 

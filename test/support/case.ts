@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { parseDecimal } from '@core/numbers/double-double';
-import type { Plan, Question, SimpleTerm, Target, Term, Variance } from '@core/protocol/plan';
+import type { Correlation, Plan, Question, SimpleTerm, Target, Term, Variance } from '@core/protocol/plan';
 import type { Cells } from '@core/table/cells';
 import Papa from 'papaparse';
 
@@ -18,7 +18,12 @@ export interface CaseFit {
   readonly fit: string;
   readonly spec: {
     readonly parts: Record<string, unknown>[];
-    readonly link: { readonly kind: string };
+    readonly link: {
+      readonly kind: string;
+      readonly file?: string;
+      readonly scale?: 'fixed' | 'free';
+      readonly freedom?: number;
+    };
     readonly method: string;
     readonly rule?: string;
     readonly inference: { readonly kind: string; readonly type?: string };
@@ -27,6 +32,7 @@ export interface CaseFit {
     readonly questions?: Question[];
     readonly fixed?: Record<string, number>;
     readonly outcome_scale?: Plan['outcomeScale'];
+    readonly half?: 'none' | 'extreme-cells' | 'all-cells';
     readonly freedom?: number;
     readonly order?: string;
   };
@@ -43,9 +49,13 @@ export interface ReferenceCase {
   readonly note: string;
   readonly roles: {
     readonly response: string | null;
+    readonly numerator?: string;
+    readonly exposure?: string;
+    readonly per?: number;
     readonly size: string | null;
     readonly se: string | null;
     readonly label?: string;
+    readonly matrix?: string;
     readonly label_columns?: string[];
     readonly block?: string;
     readonly time?: string;
@@ -100,6 +110,35 @@ export function isDiagonal(fit: CaseFit): boolean {
   return !correlated.has(fit.spec.link.kind) && !fit.spec.parts.some((p) => p['kind'] === 'shared');
 }
 
+/** The correlation that a link puts on the sampling part. */
+function correlationOf(roles: ReferenceCase['roles'], kind: string): Correlation | null {
+  const by = roles.block ? [roles.block] : [];
+  if (kind === 'exchangeable') return { kind, by };
+  return kind === 'serial' ? { kind, by, order: roles.time as string } : null;
+}
+
+/** A case's parts as a plan writes them: a link goes on the sampling part, stands beside it (shared) or in place of it (a matrix). */
+function partsOf(roles: ReferenceCase['roles'], { parts, link }: CaseFit['spec']): Variance['parts'] {
+  if (link.kind === 'matrix') {
+    const { file = '', scale = 'fixed', freedom = null } = link;
+    return [{ kind: 'matrix', file, scale, freedom }];
+  }
+  const own = parts.map((part, i) => {
+    const correlation = part['correlation'] ?? (i === 0 ? correlationOf(roles, link.kind) : null);
+    if (part['kind'] === 'shared') return part;
+    if (part['kind'] === 'given') return { ...part, freedom: part['freedom'] ?? null, correlation };
+    if (part['kind'] !== 'log-linear') return { ...part, correlation };
+    const terms = (part['columns'] as string[]).map((name): SimpleTerm => {
+      const logged = /^log\((.+)\)$/.exec(name)?.[1];
+      if (logged !== undefined) return { column: logged, transform: 'log' };
+      return simple(roles.terms.find(({ column }) => column === name) ?? { column: name });
+    });
+    return { kind: 'log-linear', terms, correlation };
+  });
+  const shared = link.kind === 'shared' ? [{ kind: 'shared', by: [roles.block as string] }] : [];
+  return [...own, ...shared] as Variance['parts'];
+}
+
 /** A case's fit as a plan in its normal form. */
 export function planOf(of: ReferenceCase, fit: CaseFit): Plan {
   const { roles } = of;
@@ -107,18 +146,19 @@ export function planOf(of: ReferenceCase, fit: CaseFit): Plan {
   const estimate = (spec.method === 'moments'
     ? { method: 'moments', rule: spec.rule }
     : { method: spec.method }) as unknown as Plan['estimate'];
+  const by = roles.cluster ? [roles.cluster] : [];
   const inference = (
-    spec.inference.kind === 'robust' || spec.inference.kind === 'clustered'
-      ? { kind: spec.inference.kind, level: 0.95, correction: spec.inference.type }
-      : spec.inference.kind === 'knapp-hartung'
-        ? { kind: 'knapp-hartung', level: 0.95, floor: false }
-        : { kind: spec.inference.kind, level: 0.95 }
+    spec.inference.kind === 'robust'
+      ? { kind: 'robust', level: 0.95, correction: spec.inference.type }
+      : spec.inference.kind === 'clustered'
+        ? { kind: 'clustered', level: 0.95, correction: spec.inference.type, by, alsoBy: null }
+        : spec.inference.kind === 'wild'
+          ? { kind: 'wild', level: 0.95, by, replications: 9999, seed: 1 }
+          : spec.inference.kind === 'knapp-hartung'
+            ? { kind: 'knapp-hartung', level: 0.95, floor: false }
+            : { kind: spec.inference.kind, level: 0.95 }
   ) as Plan['inference'];
-  const parts = spec.parts.map((part) =>
-    part['kind'] === 'given'
-      ? { kind: 'given', scale: part['scale'], freedom: part['freedom'] ?? null, correlation: null }
-      : { ...part, correlation: null },
-  ) as Variance['parts'];
+  const parts = partsOf(roles, spec);
   return {
     format: 'steelyard-plan/1',
     title: of.title,
@@ -142,16 +182,16 @@ export function planOf(of: ReferenceCase, fit: CaseFit): Plan {
       error: roles.se,
       errorKind: 'se',
       errorLevel: null,
-      count: null,
-      exposure: null,
-      per: 1,
+      count: roles.numerator ?? null,
+      exposure: roles.exposure ?? null,
+      per: roles.per ?? 1,
       designEffect: null,
       withinSd: null,
     },
     units: {},
     matters: {},
     outcomeScale: spec.outcome_scale ?? 'identity',
-    addedHalf: null,
+    addedHalf: spec.half === undefined ? null : spec.half === 'none' ? 'no' : spec.half,
     terms: termsOf(roles),
     intercept: roles.intercept,
     variance: { parts, fixed: spec.fixed ?? {} },
@@ -212,6 +252,7 @@ export function cellsFrom(csv: string, plan: Plan): Cells {
     texts,
     columns: names,
     labelColumns,
+    matrices: new Map(),
     neighbours: null,
     data: { rows: data.length, used: data.length, omitted: [], files: [], unmatched: [] },
   };
