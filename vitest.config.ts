@@ -8,6 +8,8 @@ const alias = {
 
 export default defineConfig({
   test: {
+    // One for every core of a small machine: the default leaves one idle.
+    maxWorkers: 2,
     projects: [
       {
         resolve: { alias },

@@ -1,10 +1,6 @@
 import type { Decimals } from '../numbers/decimals';
-import { type WideNumber, wideQuotient, wideRoot, wideZeros } from './wide';
-
-/** 2^27 + 1: splits a double into two halves of 26 bits (Dekker 1971). */
-const SPLIT = 134217729;
-/** What is left of a diagonal entry below this share of it counts as nothing: entries are known to a double's digits, whatever is computed of them. */
-const NOT_DEFINITE = 2e-15;
+import { NOT_DEFINITE_WIDE } from '../numbers/tolerances';
+import { type WideNumber, wideAddProducts, wideQuotient, wideRoot, wideZeros } from './wide';
 
 /**
  * The lower Cholesky factor of a symmetric matrix in double-double, row after row; null where it is not positive definite.
@@ -22,9 +18,9 @@ export function wideCholeskyOf(matrix: Float64Array, n: number): Decimals | null
       const entry = matrix[i * n + j] as number;
       left[0] = entry;
       left[1] = 0;
-      takeProducts(left, { a: factor, from: i * n, b: factor, start: j * n, count: j });
+      wideAddProducts(left, { a: factor, from: i * n, b: factor, start: j * n, count: j, sign: -1 });
       if (i !== j) wideQuotient(left, left, [high[j * n + j] as number, low[j * n + j] as number]);
-      else if (!((left[0] as number) > NOT_DEFINITE * entry && (left[0] as number) < Infinity)) return null;
+      else if (!((left[0] as number) > NOT_DEFINITE_WIDE * entry && (left[0] as number) < Infinity)) return null;
       else wideRoot(left, left);
       high[i * n + j] = left[0] as number;
       low[i * n + j] = left[1] as number;
@@ -39,46 +35,9 @@ export function wideForward(factor: Decimals, x: Decimals): void {
   for (let i = 0; i < n; i++) {
     left[0] = x.high[i] as number;
     left[1] = x.low[i] as number;
-    takeProducts(left, { a: factor, from: i * n, b: x, start: 0, count: i });
+    wideAddProducts(left, { a: factor, from: i * n, b: x, start: 0, count: i, sign: -1 });
     wideQuotient(left, left, [factor.high[i * n + i] as number, factor.low[i * n + i] as number]);
     x.high[i] = left[0] as number;
     x.low[i] = left[1] as number;
   }
-}
-
-/** left -= sum of a b over count places of two double-double lists. */
-function takeProducts(
-  left: WideNumber,
-  of: {
-    readonly a: Decimals;
-    readonly from: number;
-    readonly b: Decimals;
-    readonly start: number;
-    readonly count: number;
-  },
-): void {
-  const { a, from, b, start, count } = of;
-  const { high: ah, low: al } = a;
-  const { high: bh, low: bl } = b;
-  let sum = left[0] as number;
-  let rest = left[1] as number;
-  for (let l = 0; l < count; l++) {
-    const x = -(ah[from + l] as number);
-    const y = bh[start + l] as number;
-    const product = x * y;
-    let t = SPLIT * x;
-    const x1 = t - (t - x);
-    const x2 = x - x1;
-    t = SPLIT * y;
-    const y1 = t - (t - y);
-    const y2 = y - y1;
-    const error =
-      x1 * y1 - product + x1 * y2 + x2 * y1 + x2 * y2 + (x * (bl[start + l] as number) - (al[from + l] as number) * y);
-    const next = sum + product;
-    const part = next - sum;
-    rest += sum - (next - part) + (product - part) + error;
-    sum = next;
-  }
-  left[0] = sum + rest;
-  left[1] = sum - left[0] + rest;
 }

@@ -1,4 +1,5 @@
 import type { Decimals } from '../numbers/decimals';
+import { plainRestOfProduct } from '../numbers/error-free';
 
 /** 2^27 + 1: splits a double into two halves of 26 bits (Dekker 1971). */
 const SPLIT = 134217729;
@@ -24,13 +25,36 @@ export function wideCopy(column: Decimals): Decimals {
  * Source: Ogita, Rump & Oishi 2005 (Dot2), with Dekker's product.
  */
 export function wideDot(into: WideNumber, a: Decimals, b: Decimals, from = 0): WideNumber {
+  into[0] = 0;
+  into[1] = 0;
+  wideAddProducts(into, { a, from, b, start: from, count: a.high.length - from, sign: 1 });
+  return into;
+}
+
+/**
+ * into += sign times the sum of a_(from + i) b_(start + i) over count places, in about twice the precision of a double.
+ *
+ * into: [high, low]. Source: Ogita, Rump & Oishi 2005 (Dot2), with Dekker's product.
+ */
+export function wideAddProducts(
+  into: WideNumber,
+  of: {
+    readonly a: Decimals;
+    readonly from: number;
+    readonly b: Decimals;
+    readonly start: number;
+    readonly count: number;
+    readonly sign: 1 | -1;
+  },
+): void {
+  const { a, from, b, start, count, sign } = of;
   const { high: ah, low: al } = a;
   const { high: bh, low: bl } = b;
-  let sum = 0;
-  let rest = 0;
-  for (let g = from; g < ah.length; g++) {
-    const x = ah[g] as number;
-    const y = bh[g] as number;
+  let sum = into[0] as number;
+  let rest = into[1] as number;
+  for (let i = 0; i < count; i++) {
+    const x = sign * (ah[from + i] as number);
+    const y = bh[start + i] as number;
     const product = x * y;
     let t = SPLIT * x;
     const x1 = t - (t - x);
@@ -38,7 +62,13 @@ export function wideDot(into: WideNumber, a: Decimals, b: Decimals, from = 0): W
     t = SPLIT * y;
     const y1 = t - (t - y);
     const y2 = y - y1;
-    const error = x1 * y1 - product + x1 * y2 + x2 * y1 + x2 * y2 + (x * (bl[g] as number) + y * (al[g] as number));
+    const error =
+      x1 * y1 -
+      product +
+      x1 * y2 +
+      x2 * y1 +
+      x2 * y2 +
+      (x * (bl[start + i] as number) + y * sign * (al[from + i] as number));
     const next = sum + product;
     const part = next - sum;
     rest += sum - (next - part) + (product - part) + error;
@@ -46,7 +76,6 @@ export function wideDot(into: WideNumber, a: Decimals, b: Decimals, from = 0): W
   }
   into[0] = sum + rest;
   into[1] = sum - into[0] + rest;
-  return into;
 }
 
 /**
@@ -99,13 +128,7 @@ export function wideTimes(column: Decimals, factors: Decimals): Decimals {
 /** Writes the product of two double-double numbers into place g of a column. */
 export function wideProduct(into: Decimals, g: number, a: number, al: number, b: number, bl: number): void {
   const product = a * b;
-  let t = SPLIT * a;
-  const a1 = t - (t - a);
-  const a2 = a - a1;
-  t = SPLIT * b;
-  const b1 = t - (t - b);
-  const b2 = b - b1;
-  const rest = a1 * b1 - product + a1 * b2 + a2 * b1 + a2 * b2 + (a * bl + al * b);
+  const rest = plainRestOfProduct(a, b, product) + (a * bl + al * b);
   const sum = product + rest;
   into.high[g] = sum;
   into.low[g] = product - sum + rest;
@@ -140,12 +163,5 @@ export function wideRoot(into: WideNumber, a: ArrayLike<number>): WideNumber {
 function leftOver(a: ArrayLike<number>, q: number, b: ArrayLike<number>): number {
   const bh = b[0] as number;
   const product = q * bh;
-  let t = SPLIT * q;
-  const q1 = t - (t - q);
-  const q2 = q - q1;
-  t = SPLIT * bh;
-  const b1 = t - (t - bh);
-  const b2 = bh - b1;
-  const error = q1 * b1 - product + q1 * b2 + q2 * b1 + q2 * b2;
-  return (a[0] as number) - product - error + (a[1] as number) - q * (b[1] as number);
+  return (a[0] as number) - product - plainRestOfProduct(q, bh, product) + (a[1] as number) - q * (b[1] as number);
 }

@@ -53,7 +53,7 @@ export function denseBlock(of: {
     logDeterminant,
     whiten: (rows, width) => forwardRows(factor, rows, width),
     slopes: () => (made ??= denseSlopes().map((slope) => slope && slopeOf(slope, n))),
-    traces: () => tracesOf(denseSlopes()),
+    traces: () => tracesOf(denseSlopes(), traceOfProduct),
   };
 }
 
@@ -142,17 +142,26 @@ function traceOf(matrix: Float64Array, n: number): number {
   return trace;
 }
 
-function tracesOf(slopes: readonly (Float64Array | null)[]): Float64Array {
+/** tr(M_a M_b) of every pair of slopes, q x q, row after row; 0 where one of them is. */
+export function tracesOf<Slope>(
+  slopes: readonly (Slope | null)[],
+  traceOfPair: (first: Slope, second: Slope) => number,
+): Float64Array {
   const q = slopes.length;
   const traces = new Float64Array(q * q);
   for (const [a, first] of slopes.entries())
     for (let b = 0; b <= a; b++) {
       const second = slopes[b];
       if (!first || !second) continue;
-      let sum = 0;
-      for (let i = 0; i < first.length; i++) sum += (first[i] as number) * (second[i] as number);
-      traces[a * q + b] = sum;
-      traces[b * q + a] = sum;
+      const trace = traceOfPair(first, second);
+      traces[a * q + b] = trace;
+      traces[b * q + a] = trace;
     }
   return traces;
+}
+
+function traceOfProduct(first: Float64Array, second: Float64Array): number {
+  let sum = 0;
+  for (let i = 0; i < first.length; i++) sum += (first[i] as number) * (second[i] as number);
+  return sum;
 }

@@ -8,8 +8,9 @@ import {
   unwhitenChain,
   whitenChain,
 } from '../algebra/chain';
+
 import { log } from '../numbers/elementary';
-import type { LinkedBlock } from './linked-block';
+import { type LinkedBlock, tracesOf } from './linked-block';
 
 /**
  * A chain in a likelihood, at the cost of its cells: M_a = A_a + A_a', A_a = P^-1 dP.
@@ -39,7 +40,8 @@ export function serialBlock(of: {
         (slope) =>
           slope && { trace: traceOf(slope), times: (rows, width) => timesMoving(chain, slope, { rows, width }) },
       ),
-    traces: () => tracesOf(chain, slopes()),
+    // tr(M_a M_b) = 2 tr(A_a A_b) + 2 tr(A_a A_b')
+    traces: () => tracesOf(slopes(), (first, second) => 2 * pairTrace(chain, first, second)),
   };
 }
 
@@ -117,21 +119,6 @@ function shift(
     const share = from < 0 || from >= n ? 0 : (below[forward ? t : from] as number);
     for (let c = 0; c < width; c++) rows[own + c] = share * (rows[other + c] as number);
   }
-}
-
-/** tr(M_a M_b) = 2 tr(A_a A_b) + 2 tr(A_a A_b'). */
-function tracesOf(chain: Chain, slopes: readonly (Moving | null)[]): Float64Array {
-  const q = slopes.length;
-  const traces = new Float64Array(q * q);
-  for (const [a, first] of slopes.entries())
-    for (let b = 0; b <= a; b++) {
-      const second = slopes[b];
-      if (!first || !second) continue;
-      const value = 2 * pairTrace(chain, first, second);
-      traces[a * q + b] = value;
-      traces[b * q + a] = value;
-    }
-  return traces;
 }
 
 /** tr(A_a A_b) + tr(A_a A_b'); R^-1 of a chain has entries beside the diagonal alone. */

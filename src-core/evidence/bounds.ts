@@ -28,7 +28,8 @@ export interface BoundsFound {
   readonly changes: readonly BoundChange[];
 }
 
-interface Asked {
+/** What bounds are sought of: the chosen fit, its cells as the data stage left them, its model and what was claimed of it. */
+export interface Asked {
   readonly fitted: Fitted;
   readonly cells: Cells;
   readonly plan: Plan;

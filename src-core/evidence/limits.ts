@@ -1,10 +1,5 @@
-import type { Fitted } from '../estimate/fitted';
-import type { Model } from '../inference/check-model';
-import type { Plan } from '../protocol/plan';
-import type { Bound, Coefficient } from '../protocol/result';
-import type { Hooks } from '../protocol/source';
-import type { Cells } from '../table/cells';
-import { type BoundChange, boundsOf } from './bounds';
+import type { Bound } from '../protocol/result';
+import { type Asked, type BoundChange, boundsOf } from './bounds';
 import { sizeBoundsOf } from './size-bounds';
 
 /** What the values known to within limits do to the coefficients. */
@@ -29,14 +24,7 @@ export interface LimitFacts {
  * cells: as the data stage left them, before any outcome scale; model: of the chosen fit. Bounds that the model stage refuses on their cells are none,
  * and said to be.
  */
-export function limitsOf(of: {
-  readonly fitted: Fitted;
-  readonly cells: Cells;
-  readonly plan: Plan;
-  readonly model: Model;
-  readonly coefficients: readonly Coefficient[];
-  readonly hooks: Hooks;
-}): Limits {
+export function limitsOf(of: Asked): Limits {
   const { fitted, cells, plan, model, coefficients, hooks } = of;
   const found = boundsOf(of);
   const alone = coefficients.length === 1;

@@ -1,3 +1,4 @@
+import { componentsOf } from '../numbers/components';
 import type { Cells } from '../table/cells';
 
 /** Groups of cells whose errors may go together. */
@@ -32,18 +33,7 @@ export function crossed(a: Clusters, b: Clusters): Clusters {
 
 /** Clusters from blocks of cells that go together; blocks that share a cell are one cluster, a cell outside every block is its own. */
 export function clustersOfBlocks(cells: number, blocks: readonly ArrayLike<number>[]): Clusters {
-  const above = Int32Array.from({ length: cells }, (_, g) => g);
-  const topOf = (g: number): number => {
-    let top = g;
-    while (above[top] !== top) {
-      above[top] = above[above[top] as number] as number;
-      top = above[top] as number;
-    }
-    return top;
-  };
-  for (const block of blocks)
-    for (let i = 1; i < block.length; i++) above[topOf(block[i] as number)] = topOf(block[0] as number);
-  return { by: [], ...numbered(Array.from(above, (_, g) => topOf(g))) };
+  return { by: [], ...numbered(Array.from(componentsOf(cells, blocks))) };
 }
 
 /** The texts that name a cluster, by column. */

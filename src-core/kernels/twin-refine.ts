@@ -1,3 +1,4 @@
+import { plainRestOfProduct } from '../numbers/error-free';
 import { BLOCK, CHUNK, type Range } from './chunks';
 
 /** 2^27 + 1: splits a double into two halves of 26 bits (Dekker 1971). */
@@ -100,14 +101,7 @@ function weighWide(
     if (factors !== 0) {
       const w = m[factors + i] as number;
       const product = h * w;
-      let spread = SPLIT * h;
-      const h1 = spread - (spread - h);
-      const h2 = h - h1;
-      spread = SPLIT * w;
-      const w1 = spread - (spread - w);
-      const w2 = w - w1;
-      const error = h1 * w1 - product + h1 * w2 + h2 * w1 + h2 * w2;
-      l = error + (h * (m[rests + i] as number) + w * l);
+      l = plainRestOfProduct(h, w, product) + (h * (m[rests + i] as number) + w * l);
       h = product;
     }
     const spread = SPLIT * h;

@@ -1,7 +1,5 @@
+import { plainRestOfProduct } from '../numbers/error-free';
 import { BLOCK, CHUNK, type Range } from './chunks';
-
-/** 2^27 + 1: splits a double into two halves of 26 bits (Dekker 1971). */
-const SPLIT = 134217729;
 
 /** What `settleChunks` works on; places in the memory. */
 export interface Settling {
@@ -69,14 +67,7 @@ export function weightChunks(
     m[roots + row] = 1 / Math.sqrt(value);
     const h = 1 / value;
     const product = h * value;
-    let spread = SPLIT * h;
-    const h1 = spread - (spread - h);
-    const h2 = h - h1;
-    spread = SPLIT * value;
-    const v1 = spread - (spread - value);
-    const v2 = value - v1;
-    const error = h1 * v1 - product + h1 * v2 + h2 * v1 + h2 * v2;
     m[high + row] = h;
-    m[low + row] = (1 - product - error) * h;
+    m[low + row] = (1 - product - plainRestOfProduct(h, value, product)) * h;
   }
 }

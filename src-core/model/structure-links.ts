@@ -1,3 +1,4 @@
+import { componentsOf } from '../numbers/components';
 import { pow } from '../numbers/elementary';
 import type { Block, Known, Slope, Tied } from './linked-parts';
 import { type Links, type Parameter, type PlacedPart, partVariances } from './structure';
@@ -39,25 +40,15 @@ function sizeOf({ cells }: Block): number {
 
 /** Connected components of two or more cells, in the order of their first cell. */
 function blocksOf(parts: readonly PlacedPart[], chains: readonly (readonly Chain[])[], count: number): Block[] {
-  const root = Int32Array.from({ length: count }, (_, g) => g);
-  const find = (g: number): number => {
-    let at = g;
-    while (root[at] !== at) {
-      root[at] = root[root[at] as number] as number;
-      at = root[at] as number;
-    }
-    return at;
-  };
-  for (const { cells } of chains.flat())
-    for (const g of cells) {
-      const [one, other] = [find(cells[0] as number), find(g)];
-      root[Math.max(one, other)] = Math.min(one, other);
-    }
+  const firstOf = componentsOf(
+    count,
+    chains.flat().map(({ cells }) => cells),
+  );
   const members = new Map<number, number[]>();
-  for (let g = 0; g < count; g++) {
-    const own = members.get(find(g));
+  for (const [g, first] of firstOf.entries()) {
+    const own = members.get(first);
     if (own) own.push(g);
-    else members.set(find(g), [g]);
+    else members.set(first, [g]);
   }
   const placeOf = new Int32Array(count);
   const byRoot = new Map<number, { cells: Int32Array; tied: { placed: PlacedPart; chains: Chain[] }[] }>();
@@ -69,7 +60,7 @@ function blocksOf(parts: readonly PlacedPart[], chains: readonly (readonly Chain
   for (const [p, own] of chains.entries())
     for (const chain of own)
       byRoot
-        .get(find(chain.cells[0] as number))
+        .get(firstOf[chain.cells[0] as number] as number)
         ?.tied[p]?.chains.push({ ...chain, cells: chain.cells.map((g) => placeOf[g] as number) });
   return [...byRoot.values()];
 }

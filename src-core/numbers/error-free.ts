@@ -52,6 +52,20 @@ export function twoProduct(a: number, b: number): Pair {
   return [high, restOfProduct(a, b, high)];
 }
 
+/**
+ * What rounding took from product = a b, for loops whose numbers are known to lie well inside the range of doubles: no splitter overflows.
+ * Always summed in the same order, which compiled kernels follow to the bit.
+ */
+export function plainRestOfProduct(a: number, b: number, product: number): number {
+  let spread = SPLITTER * a;
+  const aHigh = spread - (spread - a);
+  const aLow = a - aHigh;
+  spread = SPLITTER * b;
+  const bHigh = spread - (spread - b);
+  const bLow = b - bHigh;
+  return aHigh * bHigh - product + aHigh * bLow + aLow * bHigh + aLow * bLow;
+}
+
 /** What rounding took from high = a b: the second half of twoProduct, for loops that make no pair. */
 export function restOfProduct(a: number, b: number, high: number): number {
   if (Math.abs(high) > LARGE) return Math.abs(high) < Infinity ? restOfProduct(a * DOWN, b, high * DOWN) * UP : 0;

@@ -23,3 +23,6 @@ export const POWER_TAIL_FROM = 1e120;
 
 /** What is left of a diagonal entry in a Cholesky factor counts as nothing below this share of it. */
 export const NOT_DEFINITE = 1e-14;
+
+/** The same in double-double: entries are known to a double's digits, whatever is computed of them. */
+export const NOT_DEFINITE_WIDE = 2e-15;

@@ -1,3 +1,4 @@
+import type { DataComparison } from '../protocol/bridge';
 import { done, type Outcome } from '../protocol/outcome';
 import type { Plan } from '../protocol/plan';
 import type { SourceTable } from '../protocol/source';
@@ -7,15 +8,7 @@ import { labelKey, labelsOf } from './labels';
 import { prepareCells } from './prepare-cells';
 
 /** What other data under the same plan change. Labels and columns as they stand in the new data, lost labels as in the old. */
-export interface Replaced {
-  readonly added: readonly string[];
-  readonly lost: readonly string[];
-  readonly changed: readonly {
-    readonly label: string;
-    readonly column: string;
-    readonly before: string;
-    readonly after: string;
-  }[];
+export interface Replaced extends Pick<DataComparison, 'added' | 'lost' | 'changed'> {
   /** The used cells of the new data. */
   readonly cells: Cells;
 }

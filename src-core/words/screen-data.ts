@@ -3,6 +3,7 @@ import { holdsNumbers } from '../protocol/column-roles';
 import type { CellLook, DataLook } from '../protocol/data-look';
 import type { Derive, Encoding, Read, Status } from '../protocol/plan';
 import { count, exact, list, listSome, plural, quoted } from './numbers';
+import { valuelessPhrases } from './omissions';
 
 export const dataTexts = {
   bring: 'Bring a table in',
@@ -167,12 +168,7 @@ export const statusTexts: { readonly [S in Status]: string } = {
   value: 'a value like any other',
   'true-zero': 'truly zero',
   'rounds-to-zero': 'rounds to zero',
-  'suppressed-confidential': 'suppressed as confidential',
-  'suppressed-unreliable': 'suppressed as unreliable',
-  'suppressed-unknown': 'suppressed, the reason unknown',
-  'not-collected': 'not collected',
-  'not-applicable': 'not applicable',
-  interval: 'known as an interval only',
+  ...valuelessPhrases,
   provisional: 'provisional',
   estimated: 'estimated by its producer',
   'low-reliability': 'of low reliability',

@@ -4,6 +4,23 @@ import { BLOCK, CHUNK } from './reduce';
 
 const SPLIT: f64 = 134217729;
 
+/** What rounding took from product = a b, lane by lane (Dekker 1971). */
+// @ts-ignore: a decorator of AssemblyScript
+@inline
+function restOfProduct(a: v128, b: v128, product: v128): v128 {
+  const split = f64x2.splat(SPLIT);
+  let spread = f64x2.mul(split, a);
+  const a1 = f64x2.sub(spread, f64x2.sub(spread, a));
+  const a2 = f64x2.sub(a, a1);
+  spread = f64x2.mul(split, b);
+  const b1 = f64x2.sub(spread, f64x2.sub(spread, b));
+  const b2 = f64x2.sub(b, b1);
+  let rest = f64x2.sub(f64x2.mul(a1, b1), product);
+  rest = f64x2.add(rest, f64x2.mul(a1, b2));
+  rest = f64x2.add(rest, f64x2.mul(a2, b1));
+  return f64x2.add(rest, f64x2.mul(a2, b2));
+}
+
 /** hi, lo: r -= b x over one block; b: high, low and the two halves of high. lows: 0 where the column has none. */
 function takeWide(high: usize, low: usize, x: usize, lows: usize, b: usize): void {
   const split = f64x2.splat(SPLIT);
@@ -57,16 +74,7 @@ function weighWide(high: usize, low: usize, factors: usize, rests: usize, into: 
     if (factors != 0) {
       const w = v128.load(factors + at);
       const product = f64x2.mul(h, w);
-      let spread = f64x2.mul(split, h);
-      const h1 = f64x2.sub(spread, f64x2.sub(spread, h));
-      const h2 = f64x2.sub(h, h1);
-      spread = f64x2.mul(split, w);
-      const w1 = f64x2.sub(spread, f64x2.sub(spread, w));
-      const w2 = f64x2.sub(w, w1);
-      let error = f64x2.sub(f64x2.mul(h1, w1), product);
-      error = f64x2.add(error, f64x2.mul(h1, w2));
-      error = f64x2.add(error, f64x2.mul(h2, w1));
-      error = f64x2.add(error, f64x2.mul(h2, w2));
+      const error = restOfProduct(h, w, product);
       l = f64x2.add(error, f64x2.add(f64x2.mul(h, v128.load(rests + at)), f64x2.mul(w, l)));
       h = product;
     }
@@ -248,7 +256,6 @@ export function settleChunks(
 
 /** 1 / root v, and 1 / v in double-double, of every chunk; v: above 0. */
 export function weightChunks(v: usize, roots: usize, high: usize, low: usize, rows: i32, from: i32, to: i32): void {
-  const split = f64x2.splat(SPLIT);
   const one = f64x2.splat(1);
   const first = (<usize>from * CHUNK) << 3;
   const end = (<usize>min<i32>(rows, to * CHUNK)) << 3;
@@ -257,16 +264,7 @@ export function weightChunks(v: usize, roots: usize, high: usize, low: usize, ro
     v128.store(roots + at, f64x2.div(one, f64x2.sqrt(value)));
     const h = f64x2.div(one, value);
     const product = f64x2.mul(h, value);
-    let spread = f64x2.mul(split, h);
-    const h1 = f64x2.sub(spread, f64x2.sub(spread, h));
-    const h2 = f64x2.sub(h, h1);
-    spread = f64x2.mul(split, value);
-    const v1 = f64x2.sub(spread, f64x2.sub(spread, value));
-    const v2 = f64x2.sub(value, v1);
-    let error = f64x2.sub(f64x2.mul(h1, v1), product);
-    error = f64x2.add(error, f64x2.mul(h1, v2));
-    error = f64x2.add(error, f64x2.mul(h2, v1));
-    error = f64x2.add(error, f64x2.mul(h2, v2));
+    const error = restOfProduct(h, value, product);
     v128.store(high + at, h);
     v128.store(low + at, f64x2.mul(f64x2.sub(f64x2.sub(one, product), error), h));
   }

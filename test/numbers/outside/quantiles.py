@@ -1,4 +1,4 @@
-"""Writes quantiles.json: points at which a tail has a given size, for seeded random sizes down to 1e-300 and freedoms from .05 to 1e9, whole or not.
+"""Writes quantiles.json: points at which a tail has a given size, for seeded random sizes down to 1e-300 and freedoms from .05 to 1e7, whole or not.
 
 Run: python3 quantiles.py, with mpmath 1.2 and scipy 1.10 from Debian 12. scipy gives the starts alone; from there Newton steps on the logarithm of mpmath's own tail in 50 digits
 (incomplete gamma and beta functions; Poisson mixtures of them) go on until 30 digits stand. Points below 1e-290 or above 1e290 are left out, and so
